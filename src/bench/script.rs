@@ -1,6 +1,6 @@
 //! The words of a script: when something happens, and what.
 
-use crate::base::{CellId, Channel, Deviation, Instant, MicroVolts, Signal, SiteId, Span, TractId};
+use crate::base::{CellId, Channel, Deviation, MicroVolts, Signal, SiteId, Span, TractId};
 
 /// One step: an act, and when it happens.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -17,9 +17,9 @@ pub struct Step {
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 #[non_exhaustive]
 pub enum When {
-    /// At this instant of the run's time line; further times follow each `after` the one before.
-    At(Instant),
-    /// Every `period`, first one period after the start.
+    /// This long after the start of the run, once.
+    At(Span),
+    /// Every such span, first one span after the start.
     Every(Span),
     /// After the `nth` event from now on (1 is the next), coupled to it. Counting begins anew when the step has acted.
     After {
