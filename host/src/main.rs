@@ -1,1 +1,3 @@
+//! The command `phase4`.
+
 fn main() {}

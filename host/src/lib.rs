@@ -1,0 +1,6 @@
+//! The host side of phase4: scenario files in, closed loops run and judged, reports out.
+//!
+//! Bench use only: what this drives is never connected to a person. It is not a medical device, and what it prints is by itself no
+//! evidence of conformity with anything.
+
+pub mod run_data;
