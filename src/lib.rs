@@ -9,3 +9,4 @@ pub mod audit;
 pub mod base;
 pub mod bench;
 pub mod device;
+pub mod lead;

@@ -1,6 +1,7 @@
 //! The words of a script: when something happens, and what.
 
-use crate::base::{CellId, Channel, Deviation, MicroVolts, Signal, SiteId, Span, TractId};
+use crate::base::{CellId, Channel, Deviation, Signal, SiteId, Span, TractId};
+use crate::lead::LeadChange;
 
 /// One step: an act, and when it happens.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -136,16 +137,4 @@ pub enum Ways {
     Backward,
     /// Both.
     Both,
-}
-
-/// A change of a channel's near field.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-#[non_exhaustive]
-pub enum LeadChange {
-    /// Its peak.
-    Peak(MicroVolts),
-    /// Its delay after the activation, at least 1 µs.
-    Delay(Span),
-    /// Its width.
-    Width(Span),
 }

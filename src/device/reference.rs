@@ -1,0 +1,227 @@
+//! The reference device: the single-chamber modes as a table and three timers.
+
+use super::Device;
+use super::modes::{Escape, Event, Reaction, Row};
+use crate::base::{Channel, Edge, FineInstant, Instant, Interval, NotYet, Program, Pulse, Signal, Span, Straddle, Tie};
+
+/// A device that does what its [`Program`] says, to the microsecond.
+///
+/// It exists to test benches: something with known timing at the far end of the loop. It is not a design for a product, it has
+/// no safety concept, and nothing it does is advice on how a device should be built.
+///
+/// # Model
+/// Modes OOO, AOO, VOO, AAI and VVI. Three timers – escape, refractory, blanking – and a table of what each event does to
+/// them. The start counts as a pulse, so that every timer runs from there. The fraction of a microsecond that a rate leaves is
+/// carried from pulse to pulse: 65 /min stays in place for as long as it runs.
+///
+/// A signal is sensed `detect_delay` after its onset if its peak reaches the sensitivity. It is unseen if its onset or its
+/// sense lies in blanking, and changes nothing if its sense lies in the refractory period. With [`Straddle::End`] a signal
+/// that begins inside blanking and outlasts it is sensed at the first instant after it. While a sense is on its way, a further
+/// signal cannot start another: it would lie in the blanking of the first.
+///
+/// # Time
+/// As the contract [`Device`] says. What `poll` and `signal` do depends on instants only, never on how often they are called.
+#[derive(Debug, Clone)]
+pub struct ReferenceDevice {
+    program: Program,
+    row: Row,
+    timers: Timers,
+    state: State,
+}
+
+/// How long each timer runs.
+#[derive(Debug, Clone, Copy)]
+struct Timers {
+    lower: Interval,
+    after_sense: Interval,
+    refractory: Span,
+    blanking: Span,
+}
+
+#[derive(Debug, Clone, Copy)]
+struct State {
+    /// The latest instant the device was told of.
+    seen: Instant,
+    /// When the next pulse is due, with its fraction.
+    escape_at: Option<FineInstant>,
+    refractory_until: Instant,
+    blanked_until: Instant,
+    /// Whether a pulse or a sense started blanking.
+    blanked_by: Event,
+    /// A sense on its way from its onset.
+    sense: Option<Sense>,
+    /// A pulse emitted but not fetched yet: an expiry that came before a signal of the same instant.
+    emitted_at: Option<Instant>,
+}
+
+/// A signal whose onset is past and whose sense is still to come.
+#[derive(Debug, Clone, Copy)]
+struct Sense {
+    at: Instant,
+    began_blanked: bool,
+}
+
+impl ReferenceDevice {
+    /// A device with this program, started at `start`: the first pulse is due one lower rate interval later.
+    pub fn new(program: Program, start: Instant) -> Self {
+        let settings = program.settings();
+        let timers = Timers {
+            lower: settings.lower,
+            after_sense: program.escape_after_sense(),
+            refractory: settings.refractory,
+            blanking: settings.blanking,
+        };
+        let state = State {
+            seen: start,
+            escape_at: None,
+            refractory_until: start,
+            blanked_until: start,
+            blanked_by: Event::Pulse,
+            sense: None,
+            emitted_at: None,
+        };
+        let row = Row::of(settings.mode);
+        let mut device = Self { program, row, timers, state };
+        device.react(Event::Pulse, FineInstant::at(start));
+        device
+    }
+
+    /// What it was programmed to do.
+    pub const fn program(&self) -> &Program {
+        &self.program
+    }
+
+    /// Lets an event act on the timers.
+    fn react(&mut self, event: Event, at: FineInstant) {
+        let Reaction { escape, refractory, blanking } = self.row.on(event);
+        if let Some(escape) = escape {
+            let interval = match escape {
+                Escape::Lower => self.timers.lower,
+                Escape::AfterSense => self.timers.after_sense,
+            };
+            let due = at.plus(interval);
+            // The end of the time line is a wall: nothing can come after it.
+            self.state.escape_at = if due.nearest() == Instant::MAX { None } else { Some(due) };
+        }
+        if refractory {
+            self.state.refractory_until = at.nearest().saturating_add(self.timers.refractory);
+        }
+        if blanking {
+            self.state.blanked_until = at.nearest().saturating_add(self.timers.blanking);
+            self.state.blanked_by = event;
+        }
+    }
+
+    /// True if an event at this instant lies before a window's end, as the program reads edges.
+    fn is_inside(&self, at: Instant, end: Instant) -> bool {
+        match self.program.settings().edge {
+            Edge::Outside => at < end,
+            Edge::Inside => at <= end,
+        }
+    }
+
+    /// The first instant outside blanking.
+    const fn after_blanking(&self) -> Instant {
+        match self.program.settings().edge {
+            Edge::Outside => self.state.blanked_until,
+            Edge::Inside => self.state.blanked_until.saturating_add(Span::from_micros(1)),
+        }
+    }
+
+    /// What this sense is, from the windows as they are now.
+    fn classify(&self, sense: Sense) -> Event {
+        if sense.began_blanked || self.is_inside(sense.at, self.state.blanked_until) {
+            return if self.state.blanked_by == Event::Pulse { Event::BlankedByPulse } else { Event::BlankedBySense };
+        }
+        if self.is_inside(sense.at, self.state.refractory_until) { Event::Refractory } else { Event::Sense }
+    }
+
+    /// The sense that a signal with its onset at `at` leads to, unless something restarts a window before.
+    fn sense_of(&self, signal: Signal, at: Instant) -> Sense {
+        let settings = self.program.settings();
+        let sense_at = at.saturating_add(settings.detect_delay);
+        if !self.is_inside(at, self.state.blanked_until) {
+            return Sense { at: sense_at, began_blanked: false };
+        }
+        let after = self.after_blanking();
+        match settings.straddle {
+            Straddle::End if at.saturating_add(signal.width) > after => Sense { at: sense_at.max(after), began_blanked: false },
+            Straddle::End | Straddle::Onset => Sense { at: sense_at, began_blanked: true },
+        }
+    }
+
+    /// Does the next thing due at or before `now`; true if there was one. An expiry leaves its pulse in `emitted_at`.
+    fn step(&mut self, now: Instant) -> bool {
+        let tie = self.program.settings().tie;
+        let sense = self.state.sense.filter(|sense| sense.at <= now);
+        let expiry = self.state.escape_at.filter(|due| due.nearest() <= now);
+        match (sense, expiry) {
+            (Some(sense), Some(due)) if comes_first(due.nearest(), sense.at, tie) => self.expire(due),
+            (Some(sense), _) => {
+                self.state.sense = None;
+                self.react(self.classify(sense), FineInstant::at(sense.at));
+            }
+            (None, Some(due)) => self.expire(due),
+            (None, None) => return false,
+        }
+        true
+    }
+
+    fn expire(&mut self, due: FineInstant) {
+        self.state.escape_at = None;
+        self.react(Event::Pulse, due);
+        self.state.emitted_at = Some(due.nearest());
+    }
+}
+
+/// True if the expiry precedes the sense.
+fn comes_first(expiry: Instant, sense: Instant, tie: Tie) -> bool {
+    match tie {
+        Tie::SenseFirst => expiry < sense,
+        Tie::ExpiryFirst => expiry <= sense,
+    }
+}
+
+impl Device for ReferenceDevice {
+    fn signal(&mut self, channel: Channel, signal: Signal, at: Instant) -> Result<(), NotYet> {
+        let at = at.max(self.state.seen);
+        if let Some(due) = self.next_at().filter(|due| *due < at) {
+            return Err(NotYet(due));
+        }
+        self.state.seen = at;
+        let settings = self.program.settings();
+        if self.row.senses != Some(channel) || signal.peak < settings.sensitivity {
+            return Ok(());
+        }
+        // What precedes this signal in its own instant: an earlier sense, or the expiry where that is declared to come first.
+        let waits = self.state.emitted_at.is_some();
+        if !waits && (self.state.sense.is_some_and(|sense| sense.at == at) || settings.tie == Tie::ExpiryFirst) {
+            self.step(at);
+        }
+        let sense = self.sense_of(signal, at);
+        if self.state.sense.is_none() && !self.row.on(self.classify(sense)).is_none() {
+            self.state.sense = Some(sense);
+        }
+        Ok(())
+    }
+
+    fn poll(&mut self, now: Instant) -> Option<(Instant, Pulse)> {
+        let now = now.max(self.state.seen);
+        self.state.seen = now;
+        // At most a sense, then an expiry.
+        while self.state.emitted_at.is_none() && self.step(now) {}
+        let at = self.state.emitted_at.take()?;
+        let settings = self.program.settings();
+        Some((at, Pulse { channel: self.row.paces?, amplitude: settings.amplitude, width: settings.width }))
+    }
+
+    fn next_at(&self) -> Option<Instant> {
+        let earlier = |a: Option<Instant>, b: Option<Instant>| match (a, b) {
+            (Some(a), Some(b)) => Some(a.min(b)),
+            (a, b) => a.or(b),
+        };
+        let sense_at = self.state.sense.map(|sense| sense.at);
+        let escape_at = self.state.escape_at.map(FineInstant::nearest);
+        earlier(self.state.emitted_at, earlier(sense_at, escape_at))
+    }
+}
