@@ -1,8 +1,10 @@
 //! The reference device: the single-chamber modes as a table and three timers.
 
-use super::Device;
+use super::hooks::Hooks;
 use super::modes::{Escape, Event, Reaction, Row};
-use crate::base::{Channel, Edge, FineInstant, Instant, Interval, NotYet, Program, Pulse, Signal, Span, Straddle, Tie};
+use super::timers::Timers;
+use super::{Device, Fault};
+use crate::base::{Channel, Edge, FineInstant, Instant, NotYet, Program, Pulse, Signal, Span, Straddle, Tie};
 
 /// A device that does what its [`Program`] says, to the microsecond.
 ///
@@ -26,16 +28,8 @@ pub struct ReferenceDevice {
     program: Program,
     row: Row,
     timers: Timers,
+    hooks: Hooks,
     state: State,
-}
-
-/// How long each timer runs.
-#[derive(Debug, Clone, Copy)]
-struct Timers {
-    lower: Interval,
-    after_sense: Interval,
-    refractory: Span,
-    blanking: Span,
 }
 
 #[derive(Debug, Clone, Copy)]
@@ -52,6 +46,8 @@ struct State {
     sense: Option<Sense>,
     /// A pulse emitted but not fetched yet: an expiry that came before a signal of the same instant.
     emitted_at: Option<Instant>,
+    /// A pulse that a fault adds.
+    extra_at: Option<Instant>,
 }
 
 /// A signal whose onset is past and whose sense is still to come.
@@ -64,13 +60,21 @@ struct Sense {
 impl ReferenceDevice {
     /// A device with this program, started at `start`: the first pulse is due one lower rate interval later.
     pub fn new(program: Program, start: Instant) -> Self {
-        let settings = program.settings();
-        let timers = Timers {
-            lower: settings.lower,
-            after_sense: program.escape_after_sense(),
-            refractory: settings.refractory,
-            blanking: settings.blanking,
-        };
+        Self::with(program, None, start)
+    }
+
+    /// The same with this fault in it.
+    pub fn with_fault(program: Program, fault: Fault, start: Instant) -> Self {
+        Self::with(program, Some(fault), start)
+    }
+
+    fn with(program: Program, fault: Option<Fault>, start: Instant) -> Self {
+        let mut row = Row::of(program.settings().mode);
+        let mut timers = Timers::of(&program);
+        let mut hooks = Hooks::default();
+        if let Some(fault) = fault {
+            fault.put_into(&mut row, &mut timers, &mut hooks, start);
+        }
         let state = State {
             seen: start,
             escape_at: None,
@@ -79,9 +83,9 @@ impl ReferenceDevice {
             blanked_by: Event::Pulse,
             sense: None,
             emitted_at: None,
+            extra_at: None,
         };
-        let row = Row::of(settings.mode);
-        let mut device = Self { program, row, timers, state };
+        let mut device = Self { program, row, timers, hooks, state };
         device.react(Event::Pulse, FineInstant::at(start));
         device
     }
@@ -99,9 +103,11 @@ impl ReferenceDevice {
                 Escape::Lower => self.timers.lower,
                 Escape::AfterSense => self.timers.after_sense,
             };
-            let due = at.plus(interval);
-            // The end of the time line is a wall: nothing can come after it.
-            self.state.escape_at = if due.nearest() == Instant::MAX { None } else { Some(due) };
+            let due = match &mut self.hooks.wrap {
+                Some(wrap) => wrap.due(at, interval),
+                None => at.plus(interval),
+            };
+            self.state.escape_at = before_the_end(due);
         }
         if refractory {
             self.state.refractory_until = at.nearest().saturating_add(self.timers.refractory);
@@ -150,36 +156,64 @@ impl ReferenceDevice {
         }
     }
 
-    /// Does the next thing due at or before `now`; true if there was one. An expiry leaves its pulse in `emitted_at`.
+    /// Does the next thing due at or before `now`; true if there was one. A pulse is left in `emitted_at`.
     fn step(&mut self, now: Instant) -> bool {
-        let tie = self.program.settings().tie;
-        let sense = self.state.sense.filter(|sense| sense.at <= now);
-        let expiry = self.state.escape_at.filter(|due| due.nearest() <= now);
-        match (sense, expiry) {
-            (Some(sense), Some(due)) if comes_first(due.nearest(), sense.at, tie) => self.expire(due),
-            (Some(sense), _) => {
-                self.state.sense = None;
-                self.react(self.classify(sense), FineInstant::at(sense.at));
-            }
-            (None, Some(due)) => self.expire(due),
-            (None, None) => return false,
+        let Some(due) = self.state.next_at().filter(|due| *due <= now) else { return false };
+        if self.state.extra_at == Some(due) {
+            self.state.emitted_at = self.state.extra_at.take();
+            return true;
+        }
+        let expiry = self.state.escape_at.filter(|escape| escape.nearest() == due);
+        let sense = self.state.sense.filter(|sense| sense.at == due);
+        match (sense, expiry, self.program.settings().tie) {
+            (Some(sense), None, _) | (Some(sense), Some(_), Tie::SenseFirst) => self.detect(sense),
+            (_, Some(expiry), _) => self.expire(expiry),
+            (None, None, _) => return false,
         }
         true
     }
 
+    fn detect(&mut self, sense: Sense) {
+        self.state.sense = None;
+        let event = self.classify(sense);
+        if event == Event::Sense && self.is_within(sense.at, self.hooks.paces_in_spite_within) {
+            self.state.extra_at = self.state.escape_at.map(FineInstant::nearest);
+        }
+        self.react(event, FineInstant::at(sense.at));
+    }
+
     fn expire(&mut self, due: FineInstant) {
+        let at = due.nearest();
         self.state.escape_at = None;
+        self.state.emitted_at = Some(at);
+        self.state.extra_at = self.hooks.paces_again_after.map(|later| at.saturating_add(later));
         self.react(Event::Pulse, due);
-        self.state.emitted_at = Some(due.nearest());
+    }
+
+    /// The expiry passes unnoticed, and the timer runs for another interval.
+    fn lose_expiry(&mut self) {
+        self.state.escape_at = self.state.escape_at.and_then(|due| before_the_end(due.plus(self.timers.lower)));
+    }
+
+    /// True if a fault's span is set and `at` lies in the last such span before the expiry.
+    fn is_within(&self, at: Instant, span: Option<Span>) -> bool {
+        let left = self.state.escape_at.map(|due| due.nearest().saturating_since(at));
+        span.zip(left).is_some_and(|(span, left)| left < span)
     }
 }
 
-/// True if the expiry precedes the sense.
-fn comes_first(expiry: Instant, sense: Instant, tie: Tie) -> bool {
-    match tie {
-        Tie::SenseFirst => expiry < sense,
-        Tie::ExpiryFirst => expiry <= sense,
+impl State {
+    /// When the next thing is due, whatever it is.
+    fn next_at(&self) -> Option<Instant> {
+        let sense_at = self.sense.map(|sense| sense.at);
+        let escape_at = self.escape_at.map(FineInstant::nearest);
+        [self.emitted_at, self.extra_at, sense_at, escape_at].into_iter().flatten().min()
     }
+}
+
+/// The end of the time line is a wall: a timer that reaches it never expires.
+fn before_the_end(due: FineInstant) -> Option<FineInstant> {
+    Some(due).filter(|due| due.nearest() < Instant::MAX)
 }
 
 impl Device for ReferenceDevice {
@@ -189,6 +223,9 @@ impl Device for ReferenceDevice {
             return Err(NotYet(due));
         }
         self.state.seen = at;
+        if self.is_within(at, self.hooks.loses_expiry_within) {
+            self.lose_expiry();
+        }
         let settings = self.program.settings();
         if self.row.senses != Some(channel) || signal.peak < settings.sensitivity {
             return Ok(());
@@ -216,12 +253,6 @@ impl Device for ReferenceDevice {
     }
 
     fn next_at(&self) -> Option<Instant> {
-        let earlier = |a: Option<Instant>, b: Option<Instant>| match (a, b) {
-            (Some(a), Some(b)) => Some(a.min(b)),
-            (a, b) => a.or(b),
-        };
-        let sense_at = self.state.sense.map(|sense| sense.at);
-        let escape_at = self.state.escape_at.map(FineInstant::nearest);
-        earlier(self.state.emitted_at, earlier(sense_at, escape_at))
+        self.state.next_at()
     }
 }
