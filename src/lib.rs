@@ -9,4 +9,5 @@ pub mod audit;
 pub mod base;
 pub mod bench;
 pub mod device;
+pub mod heart;
 pub mod lead;

@@ -6,6 +6,11 @@ pub(crate) const fn wide(value: u32) -> u64 {
     value as u64
 }
 
+/// Lossless `u8` to `u32`.
+pub(crate) const fn word(value: u8) -> u32 {
+    value as u32
+}
+
 /// The low 32 bits; the high ones are dropped.
 pub(crate) const fn low_u32(value: u64) -> u32 {
     value as u32

@@ -41,7 +41,7 @@ pub enum Kind {
     Collided = 3,
     /// A wave reached a site that fired in this very instant. Place: tract. Cause: of the site's activation.
     Joined = 4,
-    /// A conducted wave discharged a cell. Place: cell. Cause: of the site's activation. `a`: µs that the cell still had to run.
+    /// Something else than its own rhythm fired a cell's site and so discharged it. Place: cell. Cause: of the site's activation. `a`: µs that the cell still had to run.
     Reset = 5,
     /// A pulse found no answer. Place: site. Cause: the pulse. `a`: [`NoCapture`]. `b`: what was missing, in mV or µs.
     NotCaptured = 6,
@@ -136,6 +136,14 @@ pub enum BlockReason {
     Site = 4,
 }
 
+impl BlockReason {
+    /// The reason's number in the canonical form.
+    #[allow(clippy::as_conversions, reason = "reads the discriminant of a field-less enum")]
+    pub const fn number(self) -> u32 {
+        self as u32
+    }
+}
+
 /// Why a pulse was not answered. The numbers are those of the canonical form.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 #[repr(u8)]
@@ -146,6 +154,14 @@ pub enum NoCapture {
     Refractory = 2,
     /// Something else fired the site during the capture latency; the margin is in µs, from that to when the pulse would have.
     Forestalled = 3,
+}
+
+impl NoCapture {
+    /// The reason's number in the canonical form.
+    #[allow(clippy::as_conversions, reason = "reads the discriminant of a field-less enum")]
+    pub const fn number(self) -> u32 {
+        self as u32
+    }
 }
 
 /// Where two opposite waves met: all that is needed to draw it, without a division in the core.

@@ -2,4 +2,4 @@
 
 mod script;
 
-pub use script::{Act, Amount, Coupling, Event, Step, Ways, When, WindowEnd};
+pub use script::{Act, Amount, Coupling, Event, Step, When, WindowEnd};

@@ -1,6 +1,7 @@
 //! The words of a script: when something happens, and what.
 
 use crate::base::{CellId, Channel, Deviation, Signal, SiteId, Span, TractId};
+use crate::heart::Ways;
 use crate::lead::LeadChange;
 
 /// One step: an act, and when it happens.
@@ -116,7 +117,7 @@ pub enum Act {
     Arrest(CellId),
     /// Lets a cell run again, from the start of an interval.
     Release(CellId),
-    /// Stops every cell and shuts every tract.
+    /// Stops every cell and focus and shuts every tract.
     Quiet,
     /// Shuts a tract.
     Shut(TractId, Ways),
@@ -126,15 +127,4 @@ pub enum Act {
     Lead(Channel, LeadChange),
     /// Ends the run.
     End,
-}
-
-/// Which ways through a tract are meant.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
-pub enum Ways {
-    /// Forward only.
-    Forward,
-    /// Backward only.
-    Backward,
-    /// Both.
-    Both,
 }
