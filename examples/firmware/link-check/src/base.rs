@@ -1,7 +1,7 @@
 use core::fmt::{self, Display, Write};
 use phase4::base::{
-    Cause, CellId, Channel, Decay, Deviation, FineInstant, FocusId, Instant, Interval, Kind, Meeting, Mode, ParamError,
-    Program, Rate, Record, RecordHash, Settings, SiteId, Span, TractId, draw, draw_below,
+    Cause, CellId, Channel, Decay, Deviation, FineInstant, FocusId, Instant, Interval, Kind, Meeting, Mode, ParamError, Program,
+    Rate, Record, RecordHash, Settings, SiteId, Span, TractId, draw, draw_below,
 };
 
 crate::entries! { BASE:

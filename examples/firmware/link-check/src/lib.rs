@@ -6,6 +6,8 @@
 #![no_std]
 
 mod base;
+mod device;
+mod lead;
 mod planted;
 mod rules;
 
