@@ -1,7 +1,7 @@
 use core::fmt::{self, Display, Write};
 use phase4::base::{
-    Cause, CellId, Channel, Decay, Deviation, FineInstant, FocusId, Instant, Interval, Kind, Meeting, Mode, ParamError, Program,
-    Rate, Record, RecordHash, Settings, SiteId, Span, TractId, draw, draw_below,
+    BlockReason, Cause, CellId, Channel, Decay, Deviation, FineInstant, FocusId, Instant, Interval, Kind, Meeting, Mode,
+    NoCapture, ParamError, Program, Rate, Record, RecordHash, Settings, SiteId, Span, TractId, draw, draw_below,
 };
 
 crate::entries! { BASE:
@@ -70,6 +70,8 @@ crate::entries! { BASE:
     Program::paces as fn(_);
     Program::senses as fn(_);
     Program::escape_after_sense as fn(_);
+    BlockReason::number as fn(_);
+    NoCapture::number as fn(_);
     Kind::number as fn(_);
     Kind::is_bench_visible as fn(_);
     Cause::new as fn(_, _);

@@ -7,6 +7,7 @@
 
 mod base;
 mod device;
+mod heart;
 mod lead;
 mod planted;
 mod rules;
