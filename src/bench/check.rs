@@ -1,8 +1,8 @@
 //! What a script may not be: too long, without sense, or in contradiction with itself.
 
 use super::{Act, Amount, Coupling, Event, Step, When};
-use crate::heart::Ways;
 use crate::base::{ParamError, Problem};
+use crate::heart::Ways;
 
 /// Checks a list of steps for a script that holds at most `room` of them.
 pub(super) fn check(steps: &[Step], room: usize, has_program: bool) -> Result<(), ParamError> {

@@ -5,6 +5,8 @@ mod closed_loop;
 mod cues;
 mod log;
 mod script;
+#[cfg(test)]
+mod tests;
 
 pub use closed_loop::{Bench, EndReason, Entry, MOST_PULSES_AT_ONCE, Setup};
 pub use cues::{Cued, Script};

@@ -1,6 +1,7 @@
 //! What each channel's electrode sees and where it paces: parameters, their checks and their defaults.
 
 use crate::base::{MicroVolts, ParamError, Problem, SiteId, Span};
+use crate::heart::plain;
 
 /// What a channel makes of an activation at its sense site.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
@@ -69,6 +70,14 @@ pub struct LeadParams {
     pub atrial: Option<ChannelParams>,
     /// The ventricular channel, if there is a ventricular lead.
     pub ventricular: Option<ChannelParams>,
+}
+
+impl LeadParams {
+    /// Both leads on the plain anatomy: the atrial one at the atrium, the ventricular one at the apex, with the usual near fields.
+    pub const PLAIN: Self = Self {
+        atrial: Some(ChannelParams::at(plain::ATRIUM, NearField::ATRIAL)),
+        ventricular: Some(ChannelParams::at(plain::APEX, NearField::VENTRICULAR)),
+    };
 }
 
 /// A change of a channel's near field, for the activations to come.
