@@ -7,7 +7,8 @@ use crate::base::{Cause, Channel, Instant, Kind, MicroVolts, NotYet, ParamError,
 ///
 /// # Time
 /// Pulled like every machine here: [`poll`](Self::poll) yields one signal at a time, stamped with its own onset; a late poll
-/// changes nothing else. After `None`, [`next_at`](Self::next_at) is `None` or later than `now`.
+/// changes nothing else. After `None`, [`next_at`](Self::next_at) is `None` or later than `now`. Within an instant
+/// everything that comes in comes before the poll.
 ///
 /// # Order
 /// Signals with the same onset come out in a fixed order: those of the script before those of the heart, atrial before ventricular.
