@@ -83,6 +83,8 @@ pub struct Bench<'a, D, const S: usize, const T: usize, const C: usize, const F:
     /// The pulse on its way into the heart.
     pulse: Option<Pulse>,
     pulses_now: u32,
+    /// A signal of the script waits to be shown before its next step acts.
+    shows: bool,
     ended: Option<EndReason>,
 }
 
@@ -123,6 +125,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
             phase: Phase::Start,
             pulse: None,
             pulses_now: 0,
+            shows: false,
             ended: None,
         })
     }
@@ -211,6 +214,12 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     }
 
     fn run_script(&mut self) -> Option<Entry> {
+        // Several steps may show a signal in one instant: each goes out at once, before the next step.
+        if core::mem::take(&mut self.shows)
+            && let Some(record) = self.lead.poll(self.now)
+        {
+            return self.show(record);
+        }
         let Some(cued) = self.script.poll(self.now) else {
             self.phase = Phase::Heart;
             return None;
@@ -234,7 +243,10 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
             Act::Quiet => self.heart.quiet(now),
             Act::Shut(tract, ways) => self.heart.shut(tract, ways, now),
             Act::Open(tract, ways) => self.heart.open(tract, ways, now),
-            Act::Signal(channel, signal) => self.lead.show(channel, signal, now, cause),
+            Act::Signal(channel, signal) => {
+                self.shows = true;
+                self.lead.show(channel, signal, now, cause)
+            }
             Act::Lead(channel, change) => {
                 self.lead.change(channel, change);
                 Ok(())
@@ -263,6 +275,11 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
             self.phase = Phase::Device;
             return None;
         };
+        self.show(record)
+    }
+
+    /// Shows the device a signal.
+    fn show(&mut self, record: Record) -> Option<Entry> {
         if let (Some(device), Some((channel, signal))) = (&mut self.device, record.as_signal())
             && device.signal(channel, signal, self.now).is_err()
         {

@@ -2,7 +2,9 @@
 
 use super::{Act, Amount, Bench, Coupling, EndReason, Entry, Event, Ring, Setup, Sink, Step, When, WindowEnd};
 use crate::audit::AuditSettings;
-use crate::base::{Channel, Deviation, Instant, Interval, Kind, Mode, Program, Rate, Record, Settings, Span};
+use crate::base::{
+    CauseKind, Channel, Deviation, Instant, Interval, Kind, MicroVolts, Mode, Program, Rate, Record, Settings, Signal, Span,
+};
 use crate::device::ReferenceDevice;
 use crate::heart::{Ways, plain};
 use crate::lead::LeadParams;
@@ -179,4 +181,20 @@ fn a_spinning_device_ends_the_run() {
     bench.run(Instant::MAX, &mut ());
     assert_eq!(bench.ended(), Some(EndReason::Spinning));
     assert_eq!(bench.now(), Instant::from_micros(700_000));
+}
+
+#[test]
+fn several_steps_may_show_signals_in_one_instant() {
+    let wave = |peak| Act::Signal(Channel::Ventricular, Signal { peak: MicroVolts(peak), width: ms(10) });
+    let steps = [
+        once(When::At(Span::ZERO), Act::Quiet),
+        once(When::At(ms(600)), wave(1_000)),
+        once(When::At(ms(600)), wave(2_000)),
+        once(When::At(ms(600)), wave(9_000)),
+    ];
+    let records = records(&mut bench(&setup(Some(vvi_60()), &steps, ms(1_700))));
+    let shown = records.iter().filter(|record| record.kind == Kind::Signal && record.cause.kind == CauseKind::Script);
+    let peaks: Vec<_> = shown.map(|record| (record.cause.id, record.a, record.at.as_micros())).collect();
+    assert_eq!(peaks, [(1, 1_000, 600_000), (2, 2_000, 600_000), (3, 9_000, 600_000)]);
+    assert_eq!(times(&records, Kind::Pulse, Channel::Ventricular.number()), [1_600], "the last one is sensed");
 }
