@@ -103,6 +103,18 @@ impl RuleSet {
         self.0 & 1_u32.rotate_left(widen(rule.number())) != 0
     }
 
+    /// The rules of both sets.
+    #[must_use]
+    pub const fn and(self, other: Self) -> Self {
+        Self(self.0 | other.0)
+    }
+
+    /// The set without the rules of the other.
+    #[must_use]
+    pub const fn without(self, other: Self) -> Self {
+        Self(self.0 & !other.0)
+    }
+
     /// True if no rule is in it.
     pub const fn is_empty(self) -> bool {
         self.0 == 0

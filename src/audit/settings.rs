@@ -22,7 +22,8 @@ impl Tolerance {
     }
 }
 
-/// How measurement uncertainty enters a judgement (standards.md E8: the rule must be written down).
+/// How measurement uncertainty enters a judgement. ISO/IEC 17025 wants the rule written down beside the result (checked: an
+/// article on its clause 7.8.6, not the text itself).
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 pub enum Decision {
     /// Broken outside the limits, held inside.
@@ -34,13 +35,16 @@ pub enum Decision {
 /// Limits of the envelope rules, which hold whatever features the device has.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct Limits {
-    /// EN1: the least span between two pulses of one chamber.
+    /// EN1: the least span between two pulses of one chamber; the tolerance of the lower rate interval stays allowed.
     pub ceiling: Span,
     /// EN2: the longest span without a pulse or a signal that may have been seen; `None` derives it from the program.
     pub longest_pause: Option<Span>,
     /// EN3: from and to after a signal that must have been seen; `None` turns the rule off.
     pub vulnerable: Option<(Span, Span)>,
 }
+
+/// 60 000/205 ms: a ceiling of 205 pulses per minute, the figure of one published manual (common practice, no further source).
+const CEILING: u64 = 292_683;
 
 /// What the auditor is told besides the program.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -64,14 +68,18 @@ pub struct AuditSettings {
     pub detect: (Span, Span),
     /// Envelope limits.
     pub limits: Limits,
+    /// The least share of windows and signals that must be decided, in thousandths: below it the run is undecided.
+    pub decide_thousandths: u32,
 }
 
 impl AuditSettings {
     /// The defaults: 8 ms on every timer, no uncertainty, simple rule, sensitivity within 20 %, sensed at the program's own
-    /// detection delay, ceiling 60 000/205 ms (292.683 ms), longest pause from the program, vulnerable window 150 to 400 ms.
+    /// detection delay, ceiling 60 000/205 ms (292.683 ms; less where the lower rate itself is higher), longest pause from the
+    /// program, vulnerable window 150 to 400 ms, nine tenths decided.
     pub const fn new(program: &Program) -> Self {
         let tolerance = Tolerance::symmetric(Span::from_millis(8));
         let delay = program.settings().detect_delay;
+        let shortest = program.settings().lower.floor().as_micros();
         Self {
             lower: tolerance,
             hysteresis: tolerance,
@@ -82,10 +90,11 @@ impl AuditSettings {
             sensitivity_thousandths: 200,
             detect: (delay, delay),
             limits: Limits {
-                ceiling: Span::from_micros(292_683),
+                ceiling: Span::from_micros(if shortest < CEILING { shortest } else { CEILING }),
                 longest_pause: None,
                 vulnerable: Some((Span::from_millis(150), Span::from_millis(400))),
             },
+            decide_thousandths: 900,
         }
     }
 

@@ -1,0 +1,130 @@
+//! What a signal may have done to a device in a given state.
+
+use super::clock::Micros;
+use super::hypothesis::Hypothesis;
+use super::windows::{Order, Windows};
+use super::{AnchorKind, Hint};
+use crate::base::Straddle;
+
+/// A signal as the auditor keeps it.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) struct Shown {
+    /// Onset.
+    pub(super) at: Micros,
+    /// Peak in microvolts.
+    pub(super) peak: u32,
+    /// From onset to end.
+    pub(super) width: Micros,
+}
+
+/// What may have become of a device in one state when its channel was shown a signal.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) struct Fate {
+    /// The signal may have changed nothing.
+    pub(super) stays: bool,
+    /// The signal may have been sensed: where, at the earliest and at the latest.
+    pub(super) senses: Option<(Micros, Micros)>,
+    /// Why both, where both.
+    pub(super) why: Option<Hint>,
+}
+
+impl Fate {
+    /// The state was not there any more: it would have paced before.
+    const GONE: Self = Self { stays: false, senses: None, why: None };
+    const NOTHING: Self = Self { stays: true, senses: None, why: None };
+
+    /// The state that the sense leads to.
+    pub(super) fn sensed(&self) -> Option<Hypothesis> {
+        let (lo, hi) = self.senses?;
+        Some(Hypothesis { lo, hi, kind: AnchorKind::Sensed, why: self.why })
+    }
+}
+
+impl Windows {
+    /// True if a signal of this peak may be seen.
+    pub(super) const fn may_see(&self, peak: u32) -> bool {
+        peak > self.must_not_see || peak >= self.must_see
+    }
+
+    /// True if a signal of this peak may be missed.
+    pub(super) const fn may_miss(&self, peak: u32) -> bool {
+        peak < self.must_see
+    }
+
+    /// What may have become of a device in this state when it was shown this signal.
+    ///
+    /// The signal is unseen if its onset or its sense lies in blanking, and changes nothing if its sense lies in refractory. Each
+    /// of the two windows ends somewhere within its tolerance, counted from an anchor that lies somewhere in its interval. A sense
+    /// comes before the expiry: a later one would have found the pulse gone out.
+    pub(super) fn fate(&self, state: &Hypothesis, signal: &Shown) -> Fate {
+        let first = signal.at.saturating_add(self.detect.lo);
+        let last = signal.at.saturating_add(self.detect.hi);
+        let expires = match self.order {
+            Order::SenseFirst => self.expires(state),
+            Order::ExpiryFirst => self.expires(state).saturating_sub(1),
+            Order::Either => self.expires(state).saturating_add(self.uncertainty),
+        };
+        if first > expires {
+            return if self.expires(state) < first { Fate::GONE } else { Fate::NOTHING };
+        }
+        if !self.may_see(signal.peak) {
+            return Fate::NOTHING;
+        }
+        let mut fate = Fate { stays: self.may_miss(signal.peak), senses: None, why: None };
+        let unseen = fate.stays;
+
+        let blanked_to = self.blanking_of(state);
+        let begins_blanked = signal.at < blanked_to.1 && signal.at.saturating_add(self.uncertainty) >= state.lo;
+        let begins_clear = signal.at >= blanked_to.0 || signal.at < state.hi;
+        if begins_clear {
+            self.detect_at(state, first, last, expires, &mut fate);
+        }
+        if begins_blanked {
+            let end = signal.at.saturating_add(signal.width);
+            let may_outlast = self.straddle == Straddle::End && end > blanked_to.0;
+            if may_outlast {
+                self.detect_at(state, first.max(blanked_to.0), last.max(blanked_to.1), expires, &mut fate);
+            }
+            if !may_outlast || end <= blanked_to.1 {
+                fate.stays = true;
+            }
+        }
+        if fate.senses.is_some() {
+            fate.why = match (unseen, begins_blanked) {
+                (true, _) => Some(Hint::NearThreshold),
+                (false, true) if fate.stays => Some(Hint::Straddles),
+                (false, _) if fate.stays => Some(Hint::AtEdge),
+                (false, _) => None,
+            };
+            fate.stays |= self.ignores;
+        }
+        fate
+    }
+
+    /// First moment outside blanking, at the earliest and at the latest.
+    const fn blanking_of(&self, state: &Hypothesis) -> (Micros, Micros) {
+        (
+            state.lo.saturating_add(self.blanking.lo).saturating_sub(self.guard),
+            state.hi.saturating_add(self.blanking.hi).saturating_add(self.guard),
+        )
+    }
+
+    /// First moment outside refractory, at the earliest and at the latest.
+    pub(super) const fn refractory_of(&self, state: &Hypothesis) -> (Micros, Micros) {
+        (
+            state.lo.saturating_add(self.refractory.lo).saturating_sub(self.guard),
+            state.hi.saturating_add(self.refractory.hi).saturating_add(self.guard),
+        )
+    }
+
+    /// Adds what a detection somewhere in this interval may do.
+    fn detect_at(&self, state: &Hypothesis, first: Micros, last: Micros, expires: Micros, fate: &mut Fate) {
+        let (earliest_clear, latest_clear) = self.refractory_of(state);
+        fate.stays |= first < latest_clear;
+        let lo = first.max(earliest_clear);
+        let hi = last.min(expires);
+        if lo <= hi {
+            fate.senses = Some(fate.senses.map_or((lo, hi), |(least, greatest)| (least.min(lo), greatest.max(hi))));
+        }
+    }
+}

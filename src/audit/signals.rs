@@ -1,0 +1,108 @@
+//! Judging signals: what each did to every state, and whether that could be told.
+
+use super::auditor::{Auditor, Waiting};
+use super::history::Origin;
+use super::hypothesis::Hypothesis;
+use super::{Hint, How, Judgement, Outcome, RuleId, RuleSet, naming};
+
+/// What a must-see signal in the alert window proves at once; taken back if a pulse shows otherwise.
+pub(super) const SENSED: [RuleId; 3] = [RuleId::In1, RuleId::Se1, RuleId::Rf2];
+
+impl<const H: usize> Auditor<H> {
+    /// Settles the signal that waits longest. One that is settled before its time may have changed nothing, whatever it is.
+    pub(super) fn settle_signal(&mut self, before_its_time: bool) {
+        let Some(Waiting { signal, tied }) = self.signals.pop_front() else { return };
+        if self.states.is_empty() {
+            // A pulse is overdue and everything it could have told is past: from here the device may be in any state.
+            naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at));
+        }
+        let mut alone: Option<Hypothesis> = None;
+        let mut count = 0_u32;
+        let mut sensed: Option<Hypothesis> = None;
+        let mut stays: Option<Option<Hint>> = None;
+        let mut why = None;
+        let mut in_alert = true;
+        let windows = &self.windows;
+        let detected = signal.at.saturating_add(windows.detect.lo);
+        self.states.retain(|state| {
+            count = count.saturating_add(1);
+            alone = Some(*state);
+            let mut fate = windows.fate(state, &signal);
+            fate.stays |= before_its_time;
+            in_alert &= detected >= windows.refractory_of(state).1;
+            if let Some(new) = fate.sensed() {
+                sensed = Some(match sensed {
+                    // All of them are the same signal's sense: their hull is as wide as the spread of the detection at most.
+                    Some(other) => Hypothesis { lo: other.lo.min(new.lo), hi: other.hi.max(new.hi), ..other },
+                    None => new,
+                });
+                why = why.or(fate.why);
+            }
+            if fate.stays {
+                stays = Some(stays.flatten().or(state.why));
+            }
+            fate.stays
+        });
+        let alone = alone.filter(|_| count == 1);
+        match (sensed, stays) {
+            (Some(sensed), None) => {
+                self.states.only(Hypothesis { why: None, ..sensed });
+                self.withhold(&sensed, alone);
+            }
+            (Some(sensed), Some(other)) => {
+                let hint =
+                    if before_its_time { Hint::Loosened } else { why.or(sensed.why).or(other).unwrap_or(Hint::UnknownState) };
+                if self.states.add(Hypothesis { why: Some(hint), ..sensed }) {
+                    self.counts.loosened = self.counts.loosened.saturating_add(1);
+                }
+                self.cannot_tell(&sensed, hint);
+            }
+            (None, Some(_)) if tied => {
+                let at = Hypothesis { lo: detected, hi: detected, ..Hypothesis::paced(detected) };
+                self.cannot_tell(&at, Hint::NearTie);
+            }
+            (None, Some(_)) => {
+                if !self.windows.may_see(signal.peak) {
+                    if in_alert {
+                        self.owed = self.owed.with(RuleId::Se2);
+                    }
+                } else if !self.windows.may_miss(signal.peak) {
+                    self.owed = self.owed.with(RuleId::Rf1);
+                }
+            }
+            // Every state was past its expiry: silence has removed them all before, or will at once.
+            (None, None) => naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at)),
+        }
+    }
+
+    /// A beat came first: the window it ended was rightly left without a pulse.
+    fn withhold(&mut self, sensed: &Hypothesis, before: Option<Hypothesis>) {
+        for rule in SENSED {
+            if !self.blind.has(rule) {
+                self.scores.held(rule, None);
+            }
+        }
+        // Whether an earlier signal had moved the window cannot be seen any more.
+        self.owed = RuleSet::EMPTY;
+        self.counts.decided = self.counts.decided.saturating_add(1);
+        let judgement = self.judgement(sensed.hi, Outcome::Held, How::Withheld, RuleId::In1);
+        self.say(match before {
+            Some(state) => self.with_window(judgement, &state),
+            None => judgement,
+        });
+    }
+
+    fn cannot_tell(&mut self, at: &Hypothesis, hint: Hint) {
+        let rule = match hint {
+            Hint::NearThreshold => RuleId::Se1,
+            Hint::AtEdge | Hint::Straddles => RuleId::Rf2,
+            _ => RuleId::In1,
+        };
+        if !self.blind.has(rule) {
+            self.scores.undecided(rule);
+        }
+        self.counts.undecided = self.counts.undecided.saturating_add(1);
+        let judgement = self.judgement(at.hi, Outcome::Undecided, How::Withheld, rule);
+        self.say(Judgement { hint: Some(hint), ..judgement });
+    }
+}
