@@ -1,7 +1,7 @@
 //! The log: numbers every record, keeps the running hash, and hands on to whatever stores it.
 
 use crate::base::{Record, RecordHash};
-use heapless::HistoryBuf;
+use heapless::Deque;
 
 /// Numbers records in the order they happen and keeps their hash.
 #[derive(Debug, Clone, Copy, Default)]
@@ -45,19 +45,19 @@ pub trait Sink {
 /// Keeps the last `N` records and counts those it had to forget.
 #[derive(Debug)]
 pub struct Ring<const N: usize> {
-    records: HistoryBuf<Record, N>,
+    records: Deque<Record, N>,
     taken: u64,
 }
 
 impl<const N: usize> Ring<N> {
     /// An empty ring.
     pub const fn new() -> Self {
-        Self { records: HistoryBuf::new(), taken: 0 }
+        Self { records: Deque::new(), taken: 0 }
     }
 
     /// The records it holds, oldest first.
     pub fn iter(&self) -> impl Iterator<Item = &Record> {
-        self.records.oldest_ordered()
+        self.records.iter()
     }
 
     /// How many records it has forgotten.
@@ -75,7 +75,10 @@ impl<const N: usize> Default for Ring<N> {
 
 impl<const N: usize> Sink for Ring<N> {
     fn take(&mut self, record: &Record) {
-        self.records.write(*record);
+        if self.records.is_full() {
+            let _oldest = self.records.pop_front();
+        }
+        let _kept = self.records.push_back(*record);
         self.taken = self.taken.saturating_add(1);
     }
 }

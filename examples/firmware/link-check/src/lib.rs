@@ -6,6 +6,7 @@
 #![no_std]
 
 mod base;
+mod bench;
 mod device;
 mod heart;
 mod lead;
