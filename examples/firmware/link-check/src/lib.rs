@@ -5,13 +5,13 @@
 //! is named nowhere here fails the check.
 #![no_std]
 
+mod audit;
 mod base;
 mod bench;
 mod device;
 mod heart;
 mod lead;
 mod planted;
-mod rules;
 
 /// A table of functions that the linker must keep.
 #[repr(transparent)]

@@ -1,0 +1,51 @@
+use phase4::audit::{self, AuditSettings, RuleId, RuleSet, Tolerance, Verdict};
+
+/// As many hypotheses as a target keeps.
+type Auditor = audit::Auditor<12>;
+
+fn count(set: RuleSet) -> usize {
+    RuleSet::iter(set).count()
+}
+
+crate::entries! { RULES:
+    RuleId::code as fn(_);
+    RuleId::line as fn(_);
+    RuleId::tier as fn(_);
+    RuleId::from_code as fn(_);
+    RuleId::number as fn(_);
+    RuleSet::only as fn(_);
+    RuleSet::with as fn(_, _);
+    RuleSet::has as fn(_, _);
+    RuleSet::and as fn(_, _);
+    RuleSet::without as fn(_, _);
+    RuleSet::is_empty as fn(_);
+    count as fn(_);
+    Tolerance::symmetric as fn(_);
+    AuditSettings::new as fn(_);
+    AuditSettings::check as fn(_, _);
+    AuditSettings::with_tolerance as fn(_, _);
+    AuditSettings::with_uncertainty as fn(_, _, _);
+    AuditSettings::with_limits as fn(_, _);
+    Verdict::of as fn(_);
+    Verdict::word as fn(_);
+    Verdict::exit_code as fn(_);
+    Verdict::worse as fn(_, _);
+}
+
+crate::entries! { AUDITOR:
+    Auditor::new as fn(_, _, _);
+    Auditor::joining as fn(_, _, _);
+    Auditor::blind as fn(_, _);
+    Auditor::observe as fn(_, _);
+    Auditor::poll as fn(_, _);
+    Auditor::next_at as fn(_);
+    Auditor::finish as fn(_, _);
+    Auditor::spinning as fn(_, _);
+    Auditor::score as fn(_, _);
+    Auditor::broken as fn(_);
+    Auditor::decided as fn(_);
+    Auditor::undecided as fn(_);
+    Auditor::loosened as fn(_);
+    Auditor::lost as fn(_);
+    Auditor::overdue_since as fn(_);
+}
