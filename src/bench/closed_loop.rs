@@ -1,7 +1,7 @@
 //! The closed loop itself: a machine that is polled like every other and yields one entry at a time.
 
 use super::{Act, Cued, Log, Script, Sink, Step};
-use crate::audit::{AuditSettings, Judgement};
+use crate::audit::{AuditSettings, Auditor, Judgement, RuleSet};
 use crate::base::{Cause, CauseKind, Channel, Instant, Kind, NotYet, ParamError, Program, Pulse, Record, Span};
 use crate::device::Device;
 use crate::heart::{Anatomy, FocusParams, Heart, PulseAnswer};
@@ -74,6 +74,7 @@ pub struct Bench<'a, D, const S: usize, const T: usize, const C: usize, const F:
     heart: Heart<'a, S, T, C, F>,
     lead: Lead,
     device: Option<D>,
+    auditor: Option<Auditor<H>>,
     script: Script<'a, N>,
     log: Log,
     seed: u64,
@@ -112,11 +113,16 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     /// Refuses foci, leads, audit settings or steps that do not fit, naming the parameter.
     pub fn new(setup: &Setup<'a, S, T, C, F>, device: Option<D>) -> Result<Self, ParamError> {
         let program = setup.judged.as_ref().map(|(program, _)| program);
+        let auditor = match &setup.judged {
+            Some((program, settings)) if device.is_some() => Some(Auditor::new(program, settings, setup.start)?),
+            _ => None,
+        };
         super::check::check_rows(setup.steps, S, T, C)?;
         Ok(Self {
             heart: Heart::new(setup.anatomy, setup.foci, setup.start)?,
             lead: Lead::new(&setup.lead)?,
             device,
+            auditor,
             script: Script::new(setup.steps, program, setup.seed, setup.start)?,
             log: Log::new(),
             seed: setup.seed,
@@ -170,7 +176,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     }
 
     /// Ends the run at the latest instant it has reached; the entries that this causes are still to be polled.
-    pub const fn interrupt(&mut self) {
+    pub fn interrupt(&mut self) {
         if self.ended.is_none() {
             self.stop(EndReason::Interrupted);
         }
@@ -200,9 +206,24 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         &self.log
     }
 
+    /// The auditor, where there is a device to judge.
+    pub const fn auditor(&self) -> Option<&Auditor<H>> {
+        self.auditor.as_ref()
+    }
+
+    /// Blinds the auditor to these rules, for tests of whether a run would notice.
+    pub fn blind(&mut self, rules: RuleSet) {
+        if let Some(auditor) = &mut self.auditor {
+            auditor.blind(rules);
+        }
+    }
+
     fn enter(&mut self, record: Record) -> Option<Entry> {
         let record = self.log.take(record);
         self.script.notice(&record);
+        if let Some(auditor) = &mut self.auditor {
+            auditor.observe(&record);
+        }
         Some(Entry::Record(record))
     }
 
@@ -318,9 +339,12 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
     }
 
-    const fn judge(&mut self, then: Phase) -> Option<Entry> {
-        self.phase = then;
-        None
+    fn judge(&mut self, then: Phase) -> Option<Entry> {
+        let judgement = self.auditor.as_mut().and_then(|auditor| auditor.poll(self.now));
+        if judgement.is_none() {
+            self.phase = then;
+        }
+        judgement.map(Entry::Judged)
     }
 
     fn next_event(&self) -> Option<Instant> {
@@ -354,16 +378,24 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         true
     }
 
-    const fn stop(&mut self, reason: EndReason) {
+    fn stop(&mut self, reason: EndReason) {
         self.ended = Some(reason);
         self.end_at = self.now;
         self.pulse = None;
+        if reason == EndReason::Spinning
+            && let Some(auditor) = &mut self.auditor
+        {
+            auditor.spinning(self.now);
+        }
         self.phase = Phase::End;
     }
 
     fn end(&mut self) -> Option<Entry> {
         self.phase = Phase::Settle;
         let reason = *self.ended.get_or_insert(EndReason::Length);
+        if let Some(auditor) = &mut self.auditor {
+            auditor.finish(self.now);
+        }
         self.enter(Record::new(self.now, Kind::End, 0, Cause::NONE).with_details(reason.number(), 0))
     }
 }
