@@ -102,6 +102,7 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
         super::check::within("foci", super::anatomy::count(F), 0, super::anatomy::count(Rows::MOST))?;
         for (row, focus) in (0_u8..).zip(foci) {
             super::check::in_row(row, focus.check(anatomy))?;
+            super::check::in_row(row, focus.check_alone(foci.iter().take(usize::from(row))))?;
         }
         let rest = Crossing { pass_at: NEVER, took: Span::ZERO, direction: Direction::Forward, cause: Cause::NONE };
         let mut heart = Self {

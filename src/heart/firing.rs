@@ -118,7 +118,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         *self.capture_due.get_mut(row)? = NEVER;
         let cause = Cause::new(CauseKind::Pulse, *self.capture_channel.get(row)?);
         let since = self.fired.get(row)?.since(self.at);
-        if since < self.anatomy.site(site)?.latency {
+        // Not answered if the site fired at the leading edge either: had it done so before the pulse, that would have found it refractory.
+        if since <= self.anatomy.site(site)?.latency {
             return Some(self.not_captured(site, cause, NoCapture::Forestalled, short(since)));
         }
         self.activate(site, cause)

@@ -86,6 +86,24 @@ impl<'a> FocusParams<'a> {
         }
     }
 
+    /// A cell gives up its place once at most.
+    pub(super) fn check_alone<'f>(&self, mut earlier: impl Iterator<Item = &'f FocusParams<'f>>) -> Result<(), ParamError> {
+        let Some(cell) = self.in_place_of() else { return Ok(()) };
+        if earlier.any(|focus| focus.in_place_of() == Some(cell)) {
+            let value = wide(word(cell.row()));
+            return conflict("in_place_of", value, "in_place_of", value, "a cell gives up its place to one series only");
+        }
+        Ok(())
+    }
+
+    /// The cell whose place it takes, if it does.
+    pub(super) const fn in_place_of(&self) -> Option<CellId> {
+        match self.kind {
+            FocusKind::Replay { in_place_of, .. } => Some(in_place_of),
+            FocusKind::Premature { .. } => None,
+        }
+    }
+
     const fn check_place(&self, cell: CellId, cells: &[super::CellParams]) -> Result<(), ParamError> {
         let value = wide(word(cell.row()));
         let (mut rest, mut row) = (cells, 0_u8);

@@ -2,7 +2,6 @@
 
 use super::engine::NEVER;
 use super::firing::short;
-use super::focus::FocusKind;
 use super::rows::Rows;
 use super::{Heart, Ways};
 use crate::base::{
@@ -177,8 +176,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     }
 
     fn series_in_place_of(&self, cell: CellId) -> Option<FocusId> {
-        let takes = |kind: &FocusKind<'_>| matches!(kind, FocusKind::Replay { in_place_of, .. } if *in_place_of == cell);
-        (0_u8..).zip(self.foci).find(|(_, focus)| takes(&focus.kind)).map(|(row, _)| FocusId::new(row))
+        (0_u8..).zip(self.foci).find(|(_, focus)| focus.in_place_of() == Some(cell)).map(|(row, _)| FocusId::new(row))
     }
 
     fn stop_focus(&mut self, focus: FocusId) {

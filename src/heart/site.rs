@@ -19,7 +19,7 @@ use crate::base::{MilliVolts, NoCapture, ParamError, Pulse, Span, low_u32, wide}
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 #[non_exhaustive]
 pub struct SiteParams {
-    /// Absolute refractory period, 1 ms to 2 s. At its very end the site can fire again.
+    /// Absolute refractory period, 1 µs to 2 s. At its very end the site can fire again.
     pub refractory: Span,
     /// Relative refractory period, counted from the end of the absolute one: up to 2 s.
     pub relative: Span,
@@ -67,7 +67,7 @@ impl SiteParams {
 
     pub(super) const fn check(&self) -> Result<(), ParamError> {
         const TWO_SECONDS: Span = Span::from_secs(2);
-        sound!(span_within("refractory", self.refractory, Span::from_millis(1), TWO_SECONDS));
+        sound!(span_within("refractory", self.refractory, Span::from_micros(1), TWO_SECONDS));
         sound!(span_within("relative", self.relative, Span::ZERO, TWO_SECONDS));
         sound!(within("rheobase", wide(self.rheobase.0), 1, 20_000));
         sound!(span_within("chronaxie", self.chronaxie, Span::from_micros(1), Span::from_millis(20)));

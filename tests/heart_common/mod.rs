@@ -90,3 +90,44 @@ fn reason(a: u32) -> String {
     let reason = known.into_iter().find(|reason| reason.number() == a & 0xFF).expect("a known reason");
     format!("{way}: {reason:?}")
 }
+
+/// Fires `site` so many times, one `period` after the other, first at `first`; returns what came until one µs before the next.
+pub(crate) fn drive<const S: usize, const T: usize, const C: usize, const F: usize>(
+    heart: &mut Heart<'_, S, T, C, F>,
+    site: SiteId,
+    first: Instant,
+    period: Span,
+    times: u64,
+) -> Vec<Record> {
+    let mut log = Vec::new();
+    for n in 0..times {
+        log.extend(beat(heart, site, first.saturating_add(period.saturating_mul(n))));
+    }
+    let end = first.saturating_add(period.saturating_mul(times));
+    log.extend(run(heart, end.saturating_sub(Span::from_micros(1))));
+    log
+}
+
+/// True if a wave was blocked at the mouth of `tract` at this instant, in µs.
+pub(crate) fn is_blocked(log: &[Record], tract: u8, at: u64) -> bool {
+    log.iter().any(|record| record.kind == Kind::Blocked && record.place == tract && record.at.as_micros() == at)
+}
+
+/// A decay that tests know to be right.
+pub(crate) fn decay(millis: u64) -> phase4::base::Decay {
+    phase4::base::Decay::new(span(millis)).expect("in range")
+}
+
+/// An interval of so many milliseconds.
+pub(crate) fn every(millis: u64) -> phase4::base::Interval {
+    phase4::base::Interval::from_span(span(millis)).expect("below an hour")
+}
+
+/// Appends everything up to and including `until`.
+pub(crate) fn drain<const S: usize, const T: usize, const C: usize, const F: usize>(
+    heart: &mut Heart<'_, S, T, C, F>,
+    until: Instant,
+    log: &mut Vec<Record>,
+) {
+    log.extend(core::iter::from_fn(|| heart.poll(until)));
+}
