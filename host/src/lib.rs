@@ -3,4 +3,6 @@
 //! Bench use only: what this drives is never connected to a person. It is not a medical device, and what it prints is by itself no
 //! evidence of conformity with anything.
 
+pub mod refusal;
 pub mod run_data;
+pub mod scenario;

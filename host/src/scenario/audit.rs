@@ -1,0 +1,104 @@
+//! `[audit]`: how the device is judged.
+
+use super::device::set;
+use super::schema::{TOLERANCE, TOLERANCES};
+use super::units::{interval, span, span_range};
+use super::walk::Section;
+use crate::refusal::Complaint;
+use phase4::audit::{AuditSettings, Decision, Limits, Tolerance};
+use phase4::base::{MicroVolts, Program, Span};
+use std::ops::Range;
+
+/// How a scenario's device is judged.
+#[derive(Debug, Clone)]
+pub struct AuditPart {
+    /// What the auditor is told.
+    pub settings: AuditSettings,
+    /// The least share of decided cases, in thousandths: below it a run is undecided.
+    pub decide_thousandths: u32,
+    /// Coverage cells that must be hit, by name, with the place in the file where each is asked for.
+    pub require: Vec<(String, Range<usize>)>,
+}
+
+/// The share of decided cases asked for where nothing else is said.
+const DECIDE_THOUSANDTHS: u32 = 900;
+
+/// Reads how this program is judged.
+pub(super) fn read(section: &Section<'_, '_>, program: &Program) -> AuditPart {
+    let mut settings = AuditSettings::new(program);
+    tolerances(section, &mut settings);
+    set(&mut settings.uncertainty, section.read("uncertainty", span));
+    set(
+        &mut settings.decision,
+        section.choice("decision").map(|word| if word == "guarded" { Decision::Guarded } else { Decision::Simple }),
+    );
+    let mut limits = settings.limits;
+    set(&mut limits.ceiling, section.read("ceiling", interval).map(|interval| interval.nearest()));
+    if let Some(pause) = section.read("longest_pause", interval) {
+        limits.longest_pause = Some(pause.nearest());
+    }
+    let window = |text: &str| if text.trim() == "off" { Ok(None) } else { span_range(text).map(Some) };
+    set(&mut limits.vulnerable, section.read("vulnerable", window));
+    settings.limits = check_limits(section, limits);
+    let decide = section.share_millionths("decide").map(|millionths| millionths.checked_div(1_000).unwrap_or(0));
+    let require = section.texts("require").into_iter().map(|text| (text.value.to_owned(), text.span)).collect();
+    AuditPart { settings, decide_thousandths: decide.unwrap_or(DECIDE_THOUSANDTHS), require }
+}
+
+fn check_limits(section: &Section<'_, '_>, limits: Limits) -> Limits {
+    if let Some((from, to)) = limits.vulnerable
+        && from == to
+    {
+        let label = "an empty window: write \"off\" if no pulse is to be judged by it";
+        section.complain(Complaint::new("[audit] vulnerable has no length").at(section.place("vulnerable"), label));
+    }
+    limits
+}
+
+fn tolerances(section: &Section<'_, '_>, settings: &mut AuditSettings) {
+    if !section.has_table("tolerance") {
+        if let Some(fixed) = section.read("tolerance", span) {
+            *settings = settings.with_tolerance(Tolerance::symmetric(fixed));
+        }
+        return;
+    }
+    let table = section.open("tolerance", &TOLERANCES);
+    *settings = settings.with_tolerance(tolerance(&table, settings.lower));
+    for (key, place) in [
+        ("lower_rate", &mut settings.lower),
+        ("hysteresis_rate", &mut settings.hysteresis),
+        ("refractory", &mut settings.refractory),
+        ("blanking", &mut settings.blanking),
+    ] {
+        if table.has_table(key) {
+            *place = tolerance(&table.open_as(key, &TOLERANCE, format!("[audit.tolerance.{key}]")), *place);
+        } else {
+            set(place, table.read(key, span).map(Tolerance::symmetric));
+        }
+    }
+    if let Some(share) = table.share_millionths("sensitivity") {
+        settings.sensitivity_thousandths = share.checked_div(1_000).unwrap_or(0);
+    }
+}
+
+/// A tolerance by its parts; what is not given is as in `usual`, and a share or a tick alone stands for itself.
+fn tolerance(table: &Section<'_, '_>, usual: Tolerance) -> Tolerance {
+    let alone = table.has("share") || table.has("tick");
+    let mut tolerance = if alone && !table.has("low") && !table.has("high") { Tolerance::symmetric(Span::ZERO) } else { usual };
+    set(&mut tolerance.low, table.read("low", span));
+    set(&mut tolerance.high, table.read("high", span));
+    set(&mut tolerance.share_millionths, table.share_millionths("share"));
+    set(&mut tolerance.tick, table.read("tick", span));
+    tolerance
+}
+
+/// The least peak that must be seen, and the greatest that must not: the sensitivity, more and less its tolerance, rounded away from it.
+pub(super) fn sensitivity_limits(program: &Program, tolerance_thousandths: u32) -> (MicroVolts, MicroVolts) {
+    let sensitivity = u64::from(program.settings().sensitivity.0);
+    let part = |thousandths: u64| sensitivity.saturating_mul(thousandths);
+    let tolerance = u64::from(tolerance_thousandths);
+    let hi = part(tolerance.saturating_add(1_000)).div_ceil(1_000);
+    let lo = part(1_000_u64.saturating_sub(tolerance)).checked_div(1_000).unwrap_or(0);
+    let narrow = |value: u64| MicroVolts(u32::try_from(value).unwrap_or(u32::MAX));
+    (narrow(hi), narrow(lo))
+}
