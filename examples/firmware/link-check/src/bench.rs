@@ -25,6 +25,8 @@ crate::entries! { BENCH:
     Bench::now as fn(_);
     Bench::ended as fn(_);
     Bench::log as fn(_);
+    Bench::auditor as fn(_);
+    Bench::blind as fn(_, _);
     Bench::pace_site as fn(_, _);
     run as fn(_, _, _);
     Foreign::new as fn(_, _);
