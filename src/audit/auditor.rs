@@ -245,7 +245,7 @@ impl<const H: usize> Auditor<H> {
         self.history.push(Event::Signal(signal));
         if self.signals.is_full() {
             // Settled before its time: it may have come after a pulse not yet looked at.
-            self.settle_signal(true);
+            self.settle_signal(now, true);
         }
         let _ = self.signals.push_back(Waiting { signal, tied: false });
     }
@@ -335,7 +335,7 @@ impl<const H: usize> Auditor<H> {
     fn step(&mut self, now: Micros) {
         let Some(at) = self.wake.filter(|at| *at <= now) else { return };
         if self.signal_due() == Some(at) {
-            self.settle_signal(false);
+            self.settle_signal(at, false);
         } else if self.pulse_due() == Some(at) {
             if let Some(pulse) = self.pulses.pop_front() {
                 self.judge_pulse(pulse);

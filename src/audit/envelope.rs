@@ -14,7 +14,7 @@ pub(super) struct Envelope {
     pause: Micros,
     vulnerable: Option<(Micros, Micros)>,
     guard: Micros,
-    /// A signal closer before a pulse than this may not have been sensed yet.
+    /// A signal no further before a pulse than this may not have been sensed yet.
     fresh: Micros,
     /// How long after anything that may have started it some blind window may still run.
     blinds: Micros,
@@ -31,9 +31,10 @@ pub(super) struct Envelope {
 impl Envelope {
     pub(super) fn new(program: &Program, settings: &AuditSettings, windows: &Windows, start: Micros) -> Self {
         let limits = &settings.limits;
-        let derived = windows.paced.latest.max(windows.sensed.latest).saturating_add(windows.detect.hi);
+        let sense = windows.latest_sense();
+        let derived = windows.paced.latest.max(windows.sensed.latest).saturating_add(sense);
         let shortest = windows.paced.earliest.min(windows.sensed.earliest);
-        let blinds = windows.refractory.hi.saturating_add(windows.detect.hi).saturating_add(windows.uncertainty);
+        let blinds = windows.refractory.hi.max(windows.blanking.hi).saturating_add(sense).saturating_add(windows.uncertainty);
         Self {
             ceiling: short(limits.ceiling).min(windows.paced.earliest),
             pause: limits.longest_pause.map_or(derived, short),
@@ -102,10 +103,11 @@ impl Envelope {
             judge(RuleId::En1, self.after_ceiling(at, last.saturating_add(self.ceiling)));
         }
         if let Some((from, to)) = self.vulnerable {
-            let cases = self.sensed.iter().flatten().filter(|onset| at.saturating_sub(**onset) >= self.fresh);
-            if let Some(case) =
-                cases.map(|onset| self.outside(at.saturating_sub(*onset), from, to)).max_by_key(|case| case.rank())
-            {
+            // So close before a pulse it may not have been sensed, nor need it ever be: the pulse's blanking may have come first.
+            let fresh = self.fresh;
+            self.sensed = self.sensed.map(|onset| onset.filter(|onset| at.saturating_sub(*onset) > fresh));
+            let spans = self.sensed.iter().flatten().map(|onset| at.saturating_sub(*onset));
+            if let Some(case) = spans.map(|span| self.outside(span, from, to)).max_by_key(|case| case.rank()) {
                 judge(RuleId::En3, case);
             }
         }

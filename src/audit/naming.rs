@@ -147,7 +147,9 @@ pub(super) fn begin<const H: usize>(states: &mut Hypotheses<H>, windows: &Window
             let kinds = [Some(AnchorKind::Paced), Some(AnchorKind::Sensed).filter(|_| windows.hysteresis)];
             for kind in kinds.into_iter().flatten() {
                 let longest = windows.escape(kind).latest.saturating_add(windows.guard);
-                states.add(Hypothesis { lo: at.saturating_sub(longest), hi: at, kind, why: Some(Hint::UnknownState) });
+                // A signal shown just before may still be on its way to its sense.
+                let hi = at.saturating_add(windows.latest_sense());
+                states.add(Hypothesis { lo: at.saturating_sub(longest), hi, kind, why: Some(Hint::UnknownState) });
             }
         }
     }

@@ -1,6 +1,7 @@
 //! Judging signals: what each did to every state, and whether that could be told.
 
 use super::auditor::{Auditor, Waiting};
+use super::clock::Micros;
 use super::history::Origin;
 use super::hypothesis::Hypothesis;
 use super::{Hint, How, Judgement, Outcome, RuleId, RuleSet, naming};
@@ -9,8 +10,9 @@ use super::{Hint, How, Judgement, Outcome, RuleId, RuleSet, naming};
 pub(super) const SENSED: [RuleId; 3] = [RuleId::In1, RuleId::Se1, RuleId::Rf2];
 
 impl<const H: usize> Auditor<H> {
-    /// Settles the signal that waits longest. One that is settled before its time may have changed nothing, whatever it is.
-    pub(super) fn settle_signal(&mut self, before_its_time: bool) {
+    /// Settles the signal that waits longest, at this moment: a state that would have paced by now is there no more unless the
+    /// signal was sensed. One that is settled before its time, for want of room, may have changed nothing, whatever it is.
+    pub(super) fn settle_signal(&mut self, at: Micros, before_its_time: bool) {
         let Some(Waiting { signal, tied }) = self.signals.pop_front() else { return };
         if self.states.is_empty() {
             // A pulse is overdue and everything it could have told is past: from here the device may be in any state.
@@ -28,6 +30,7 @@ impl<const H: usize> Auditor<H> {
             count = count.saturating_add(1);
             alone = Some(*state);
             let mut fate = windows.fate(state, &signal);
+            fate.stays &= windows.expires(state).saturating_add(windows.uncertainty) >= at;
             fate.stays |= before_its_time;
             in_alert &= detected >= windows.refractory_of(state).1;
             if let Some(new) = fate.sensed() {

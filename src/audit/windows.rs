@@ -156,6 +156,15 @@ impl Windows {
         }
     }
 
+    /// The latest a sense can follow its signal's onset: by the detection delay, or at the end of blanking where a signal that
+    /// outlasts it is seen there.
+    pub(super) fn latest_sense(&self) -> Micros {
+        match self.straddle {
+            Straddle::End if self.blanking.hi >= self.refractory.lo => self.detect.hi.max(self.blanking.hi),
+            Straddle::End | Straddle::Onset => self.detect.hi,
+        }
+    }
+
     /// When everything that could bear on a signal's sense has been seen: no pulse observed later can have preceded it.
     pub(super) const fn settles(&self, onset: Micros) -> Micros {
         let latest = onset.saturating_add(self.detect.hi).saturating_add(self.uncertainty.saturating_mul(2));

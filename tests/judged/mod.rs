@@ -2,9 +2,12 @@
 #![allow(
     dead_code,
     clippy::expect_used,
+    clippy::missing_const_for_fn,
     clippy::arithmetic_side_effects,
     reason = "a test helper; each test file uses a part of it"
 )]
+
+pub(crate) mod sloppy;
 
 use phase4::audit::{AuditSettings, Auditor, How, Judgement, Outcome, RuleId};
 use phase4::base::{
