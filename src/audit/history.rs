@@ -14,6 +14,16 @@ pub(super) enum Event {
     Pulse(Micros),
 }
 
+impl Event {
+    /// The signal, if it is one.
+    pub(super) const fn signal(self) -> Option<Shown> {
+        match self {
+            Self::Signal(signal) => Some(signal),
+            Self::Pulse(_) => None,
+        }
+    }
+}
+
 /// Where a replay begins.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Origin {

@@ -3,6 +3,7 @@
 use super::clock::Micros;
 use super::history::{Event, History, Origin};
 use super::hypothesis::{Hypotheses, Hypothesis};
+use super::sense::Shown;
 use super::windows::Windows;
 use super::{AnchorKind, Hint, RuleId, RuleSet};
 
@@ -104,10 +105,7 @@ fn explains(windows: &Windows, history: &History, back: usize, ending: Ending) -
         Ending::Pulse(at) => Some(at),
         Ending::Silence(_) => None,
     };
-    let mut signals = history.from(first).filter_map(|event| match event {
-        Event::Signal(signal) => Some(signal),
-        Event::Pulse(_) => None,
-    });
+    let mut signals = history.from(first).filter_map(Event::signal);
     let earlier = history.from(first).filter_map(|event| match event {
         Event::Pulse(at) => Some(at),
         Event::Signal(_) => None,
@@ -118,10 +116,14 @@ fn explains(windows: &Windows, history: &History, back: usize, ending: Ending) -
         earlier.chain(last).map(|at| (Some(at), at.saturating_add(windows.uncertainty))).chain([(None, Micros::MAX)])
     {
         while let Some(signal) = waiting.filter(|signal| windows.settles(signal.at) <= judged) {
-            states.show(windows, &signal);
+            states.show(windows, &signal, None);
             waiting = signals.next();
         }
         if let Some(pulse) = pulse {
+            let unsettled = history.from(first).filter_map(Event::signal).filter(|signal| windows.settles(signal.at) > judged);
+            for signal in unsettled.filter(|signal| signal.at <= judged) {
+                states.show(windows, &signal, Some(pulse));
+            }
             if !states.iter().any(|state| windows.allows(state, pulse)) {
                 return false;
             }
@@ -156,19 +158,20 @@ pub(super) fn begin<const H: usize>(states: &mut Hypotheses<H>, windows: &Window
 }
 
 impl<const H: usize> Hypotheses<H> {
-    /// Lets a signal act on every state.
-    pub(super) fn show(&mut self, windows: &Windows, signal: &super::sense::Shown) {
+    /// Lets a signal act on every state, as far as it did before this pulse; true if it may have done something.
+    pub(super) fn show(&mut self, windows: &Windows, signal: &Shown, pulse: Option<Micros>) -> bool {
         let mut sensed: Option<Hypothesis> = None;
         self.retain(|state| {
-            let fate = windows.fate(state, signal);
+            let fate = windows.fate(state, signal, pulse);
             if let Some(new) = fate.sensed() {
                 sensed =
                     Some(sensed.map_or(new, |other| Hypothesis { lo: other.lo.min(new.lo), hi: other.hi.max(new.hi), ..other }));
             }
             fate.stays
         });
-        if let Some(sensed) = sensed {
+        sensed.is_some_and(|sensed| {
             self.add(sensed);
-        }
+            true
+        })
     }
 }

@@ -7,7 +7,6 @@ use super::hypothesis::Hypothesis;
 use super::naming::{self, Ending};
 use super::scores::Measure;
 use super::signals::SENSED;
-use super::windows::Order;
 use super::{Anchor, AnchorKind, Hint, How, Judgement, Outcome, RuleId, RuleSet, Window};
 use crate::base::{Channel, Deviation};
 
@@ -29,6 +28,7 @@ impl<const H: usize> Auditor<H> {
         if !self.blind.has(RuleId::En4) {
             self.scores.held(RuleId::En4, None);
         }
+        self.settle_before(at);
         let closed = self.close_overdue(at, broken);
         if !closed {
             match self.expected(at) {
@@ -43,7 +43,6 @@ impl<const H: usize> Auditor<H> {
         }
         self.owed = RuleSet::EMPTY;
         self.history.push(Event::Pulse(at));
-        self.mark_ties(at);
     }
 
     /// A pulse on another channel, or in a mode that paces nothing.
@@ -173,19 +172,6 @@ impl<const H: usize> Auditor<H> {
         let Some(rule) = broken.iter().next() else { return };
         let judgement = self.judgement(at, Outcome::Broken, How::Early, rule);
         self.say(Judgement { seen: Some(self.clock.instant(at)), also: broken.without(RuleSet::only(rule)), ..judgement });
-    }
-
-    /// Signals still waiting whose sense may have come on either side of this pulse.
-    fn mark_ties(&mut self, at: Micros) {
-        let windows = self.windows;
-        for waiting in &mut self.signals {
-            let first = waiting.signal.at.saturating_add(windows.detect.lo).saturating_sub(windows.uncertainty);
-            let either = match windows.order {
-                Order::ExpiryFirst => first < at,
-                Order::SenseFirst | Order::Either => first <= at,
-            };
-            waiting.tied |= either && windows.may_see(waiting.signal.peak);
-        }
     }
 
     pub(super) const fn nominal_of(&self, state: &Hypothesis) -> Micros {

@@ -26,12 +26,25 @@ pub(super) struct Fate {
     pub(super) senses: Option<(Micros, Micros)>,
     /// Why both, where both.
     pub(super) why: Option<Hint>,
+    /// Its sense may come only after the pulse that is being looked at.
+    pub(super) later: bool,
+}
+
+/// Where in time a detection may lie, for one state.
+#[derive(Debug, Clone, Copy)]
+struct Reach {
+    first: Micros,
+    last: Micros,
+    /// The latest that still precedes the state's expiry.
+    expires: Micros,
+    /// The latest that may precede, and the earliest that may follow, the pulse that is being looked at.
+    pulse: Option<(Micros, Micros)>,
 }
 
 impl Fate {
     /// The state was not there any more: it would have paced before.
-    const GONE: Self = Self { stays: false, senses: None, why: None };
-    const NOTHING: Self = Self { stays: true, senses: None, why: None };
+    const GONE: Self = Self { stays: false, senses: None, why: None, later: false };
+    const NOTHING: Self = Self { stays: true, senses: None, why: None, later: false };
 
     /// The state that the sense leads to.
     pub(super) fn sensed(&self) -> Option<Hypothesis> {
@@ -55,8 +68,9 @@ impl Windows {
     ///
     /// The signal is unseen if its onset or its sense lies in blanking, and changes nothing if its sense lies in refractory. Each
     /// of the two windows ends somewhere within its tolerance, counted from an anchor that lies somewhere in its interval. A sense
-    /// comes before the expiry: a later one would have found the pulse gone out.
-    pub(super) fn fate(&self, state: &Hypothesis, signal: &Shown) -> Fate {
+    /// comes before the expiry: a later one would have found the pulse gone out. If a pulse was seen meanwhile, what came before it
+    /// is told apart from what may still come.
+    pub(super) fn fate(&self, state: &Hypothesis, signal: &Shown, pulse: Option<Micros>) -> Fate {
         let first = signal.at.saturating_add(self.detect.lo);
         let last = signal.at.saturating_add(self.detect.hi);
         let expires = match self.order {
@@ -65,25 +79,36 @@ impl Windows {
             Order::Either => self.expires(state).saturating_add(self.uncertainty),
         };
         if first > expires {
-            return if self.expires(state) < first { Fate::GONE } else { Fate::NOTHING };
+            return match pulse {
+                Some(_) => Fate { later: true, ..Fate::NOTHING },
+                None if self.expires(state) < first => Fate::GONE,
+                None => Fate::NOTHING,
+            };
         }
         if !self.may_see(signal.peak) {
             return Fate::NOTHING;
         }
-        let mut fate = Fate { stays: self.may_miss(signal.peak), senses: None, why: None };
+        let pulse = pulse.map(|at| match self.order {
+            Order::SenseFirst => (at, at.saturating_add(1)),
+            Order::ExpiryFirst => (at.saturating_sub(1), at),
+            Order::Either => (at.saturating_add(self.uncertainty), at.saturating_sub(self.uncertainty)),
+        });
+        let mut fate = Fate { stays: self.may_miss(signal.peak), senses: None, why: None, later: false };
+        let reach = Reach { first, last, expires, pulse };
         let unseen = fate.stays;
 
         let blanked_to = self.blanking_of(state);
         let begins_blanked = signal.at < blanked_to.1 && signal.at.saturating_add(self.uncertainty) >= state.lo;
         let begins_clear = signal.at >= blanked_to.0 || signal.at < state.hi;
         if begins_clear {
-            self.detect_at(state, first, last, expires, &mut fate);
+            self.detect_in(state, reach, &mut fate);
         }
         if begins_blanked {
             let end = signal.at.saturating_add(signal.width);
             let may_outlast = self.straddle == Straddle::End && end > blanked_to.0;
             if may_outlast {
-                self.detect_at(state, first.max(blanked_to.0), last.max(blanked_to.1), expires, &mut fate);
+                let reach = Reach { first: first.max(blanked_to.0), last: last.max(blanked_to.1), ..reach };
+                self.detect_in(state, reach, &mut fate);
             }
             if !may_outlast || end <= blanked_to.1 {
                 fate.stays = true;
@@ -117,12 +142,19 @@ impl Windows {
         )
     }
 
-    /// Adds what a detection somewhere in this interval may do.
-    fn detect_at(&self, state: &Hypothesis, first: Micros, last: Micros, expires: Micros, fate: &mut Fate) {
+    /// Adds what a detection somewhere in this reach may do.
+    fn detect_in(&self, state: &Hypothesis, reach: Reach, fate: &mut Fate) {
         let (earliest_clear, latest_clear) = self.refractory_of(state);
-        fate.stays |= first < latest_clear;
-        let lo = first.max(earliest_clear);
-        let hi = last.min(expires);
+        fate.stays |= reach.first < latest_clear;
+        let lo = reach.first.max(earliest_clear);
+        let mut hi = reach.last.min(reach.expires);
+        if let Some((before, after)) = reach.pulse {
+            if reach.last >= after {
+                fate.later = true;
+                fate.stays = true;
+            }
+            hi = hi.min(before);
+        }
         if lo <= hi {
             fate.senses = Some(fate.senses.map_or((lo, hi), |(least, greatest)| (least.min(lo), greatest.max(hi))));
         }

@@ -18,6 +18,7 @@ impl<const H: usize> Auditor<H> {
             // A pulse is overdue and everything it could have told is past: from here the device may be in any state.
             naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at));
         }
+        let next = self.signals.front().map(|waiting| waiting.signal.at.saturating_add(self.windows.detect.lo));
         let mut alone: Option<Hypothesis> = None;
         let mut count = 0_u32;
         let mut sensed: Option<Hypothesis> = None;
@@ -29,8 +30,10 @@ impl<const H: usize> Auditor<H> {
         self.states.retain(|state| {
             count = count.saturating_add(1);
             alone = Some(*state);
-            let mut fate = windows.fate(state, &signal);
-            fate.stays &= windows.expires(state).saturating_add(windows.uncertainty) >= at;
+            let mut fate = windows.fate(state, &signal, None);
+            let over = windows.expires(state).saturating_add(windows.uncertainty);
+            // Past its expiry a state lives on only if the next signal may have come before it.
+            fate.stays &= over >= at || next.is_some_and(|next| next <= over);
             fate.stays |= before_its_time;
             in_alert &= detected >= windows.refractory_of(state).1;
             if let Some(new) = fate.sensed() {
@@ -75,6 +78,22 @@ impl<const H: usize> Auditor<H> {
             }
             // Every state was past its expiry: silence has removed them all before, or will at once.
             (None, None) => naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at)),
+        }
+    }
+
+    /// Settles the signals whose sense must have come before this pulse, and lets those whose sense may have come before it act as
+    /// far as they did.
+    pub(super) fn settle_before(&mut self, pulse: Micros) {
+        while let Some(front) = self.signals.front().copied() {
+            let windows = &self.windows;
+            let reached = front.signal.at.saturating_add(windows.detect.lo) <= pulse.saturating_add(windows.uncertainty);
+            if !reached || self.states.iter().any(|state| windows.fate(state, &front.signal, Some(pulse)).later) {
+                break;
+            }
+            self.settle_signal(pulse, false);
+        }
+        for waiting in &mut self.signals {
+            waiting.tied |= self.states.show(&self.windows, &waiting.signal, Some(pulse));
         }
     }
 

@@ -166,8 +166,8 @@ impl Windows {
     }
 
     /// When everything that could bear on a signal's sense has been seen: no pulse observed later can have preceded it.
-    pub(super) const fn settles(&self, onset: Micros) -> Micros {
-        let latest = onset.saturating_add(self.detect.hi).saturating_add(self.uncertainty.saturating_mul(2));
+    pub(super) fn settles(&self, onset: Micros) -> Micros {
+        let latest = onset.saturating_add(self.latest_sense()).saturating_add(self.uncertainty.saturating_mul(2));
         match self.order {
             Order::SenseFirst => latest,
             Order::ExpiryFirst | Order::Either => latest.saturating_add(1),
