@@ -1,5 +1,16 @@
 //! Clean but sloppy devices: whatever they do within their tolerances, no finding. `PHASE4_SCRIPTS=2000000 cargo test --release
 //! --test audit_sloppy` is the long form.
+#![allow(
+    clippy::arithmetic_side_effects,
+    clippy::as_conversions,
+    clippy::expect_used,
+    clippy::float_arithmetic,
+    clippy::indexing_slicing,
+    clippy::missing_const_for_fn,
+    clippy::panic,
+    clippy::unwrap_used,
+    reason = "tests may"
+)]
 
 mod judged;
 

@@ -1,4 +1,15 @@
 //! Time lines of streams that a bench could have recorded, and what the auditor must say of them.
+#![allow(
+    clippy::arithmetic_side_effects,
+    clippy::as_conversions,
+    clippy::expect_used,
+    clippy::float_arithmetic,
+    clippy::indexing_slicing,
+    clippy::missing_const_for_fn,
+    clippy::panic,
+    clippy::unwrap_used,
+    reason = "tests may"
+)]
 
 mod judged;
 

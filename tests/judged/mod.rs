@@ -1,9 +1,14 @@
 //! A recorded stream and its judge, for tests that read as time lines: signals and pulses in milliseconds, judgements out.
 #![allow(
     dead_code,
-    clippy::expect_used,
-    clippy::missing_const_for_fn,
     clippy::arithmetic_side_effects,
+    clippy::as_conversions,
+    clippy::expect_used,
+    clippy::float_arithmetic,
+    clippy::indexing_slicing,
+    clippy::missing_const_for_fn,
+    clippy::panic,
+    clippy::unwrap_used,
     reason = "a test helper; each test file uses a part of it"
 )]
 

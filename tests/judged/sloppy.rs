@@ -64,8 +64,8 @@ pub(crate) struct Script {
     pub(crate) joins_at: Option<Instant>,
 }
 
-impl std::fmt::Display for Script {
-    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+impl core::fmt::Display for Script {
+    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
         writeln!(f, "{:?}", self.program.settings())?;
         writeln!(f, "{:?}", self.settings)?;
         writeln!(f, "start {} joins {:?}", self.start.as_micros(), self.joins_at.map(Instant::as_micros))?;
@@ -355,7 +355,7 @@ impl Run {
         let uncertainty = self.settings.uncertainty.as_micros();
         let channel = self.channel();
         let mut records: Vec<Record> = Vec::new();
-        for (at, seen) in std::mem::take(&mut self.seen) {
+        for (at, seen) in core::mem::take(&mut self.seen) {
             let at = if uncertainty == 0 { at } else { at + self.dice.between(0, uncertainty) - uncertainty / 2 };
             records.push(match seen {
                 Seen::Pulse => pulse_us(channel, at),
