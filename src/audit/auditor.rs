@@ -117,7 +117,7 @@ impl<const H: usize> Auditor<H> {
             pulses: Deque::new(),
             history: History::new(origin),
             overdue: None,
-            envelope: Envelope::new(program, settings, &windows, clock.offset(start)),
+            envelope: Envelope::new(program, settings, &windows, clock.offset(start), matches!(origin, Origin::Unknown(_))),
             scores: Scores::default(),
             owed: RuleSet::EMPTY,
             judgements: Deque::new(),

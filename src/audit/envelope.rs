@@ -29,7 +29,8 @@ pub(super) struct Envelope {
 }
 
 impl Envelope {
-    pub(super) fn new(program: &Program, settings: &AuditSettings, windows: &Windows, start: Micros) -> Self {
+    /// At the start of a device, which counts as a pulse, or, joining one that runs already, before the first pulse is known.
+    pub(super) fn new(program: &Program, settings: &AuditSettings, windows: &Windows, start: Micros, joins: bool) -> Self {
         let limits = &settings.limits;
         let sense = windows.latest_sense();
         let derived = windows.paced.latest.max(windows.sensed.latest).saturating_add(sense);
@@ -45,7 +46,7 @@ impl Envelope {
             guard: windows.guard,
             fresh: windows.detect.hi.saturating_add(windows.uncertainty),
             blinds,
-            last_pulse: None,
+            last_pulse: if joins { None } else { Some(start) },
             heard: start,
             reported: false,
             blind_until: start.saturating_add(blinds),

@@ -146,7 +146,8 @@ impl Windows {
         };
         fits(self.escape(state.kind))
             || self.swapped_escape(state.kind).is_some_and(fits)
-            || self.repeats.is_some_and(|by| state.lo <= pulse && pulse <= state.hi.saturating_add(by))
+            || (state.kind != AnchorKind::Start
+                && self.repeats.is_some_and(|by| state.lo <= pulse && pulse <= state.hi.saturating_add(by)))
     }
 
     const fn swapped_escape(&self, kind: AnchorKind) -> Option<Escape> {
