@@ -47,8 +47,11 @@ fn stream(device: &mut dyn Device, probe: &Probe, program: &Program, cycles: usi
     records
 }
 
-/// How a bench and a lockstep run are judged, with what their device may be off by.
-fn benches() -> [(&'static str, Allowance, fn(&Program) -> AuditSettings); 3] {
+/// A way of judging: its name, what a device may then be off by, and the settings.
+type Way = (&'static str, Allowance, fn(&Program) -> AuditSettings);
+
+/// In lockstep, in process with tolerance, on a bench.
+fn benches() -> [Way; 3] {
     let ms = Span::from_millis;
     [
         ("lockstep", Allowance { interval: Span::ZERO, edge: Span::ZERO, ceiling: ms(292) }, |program| {
