@@ -11,6 +11,11 @@ pub(crate) const fn word(value: u8) -> u32 {
     value as u32
 }
 
+/// The low 8 bits; the high ones are dropped.
+pub(crate) const fn low_u8(value: u32) -> u8 {
+    value as u8
+}
+
 /// The low 32 bits; the high ones are dropped.
 pub(crate) const fn low_u32(value: u64) -> u32 {
     value as u32

@@ -25,4 +25,4 @@ pub use program::{Edge, Program, Settings, Straddle, Tie};
 pub use record::{BlockReason, Cause, CauseKind, Kind, Meeting, NoCapture, Record};
 pub use signal::{Channel, MicroVolts, MilliVolts, Pulse, Signal};
 
-pub(crate) use convert::{high_u64, low_u32, wide, word};
+pub(crate) use convert::{high_u64, low_u8, low_u32, wide, word};

@@ -32,9 +32,16 @@ pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: us
     pub(super) at: Instant,
     /// The latest instant polled for.
     seen: Instant,
-    /// When there is something to do next.
-    pub(super) next: Instant,
-    pub(super) pending: Pending,
+    /// When there is something to do next: `at` while this instant is not done with, else `due`.
+    next: Instant,
+    /// The soonest of all due times below, and whose it is.
+    due: Instant,
+    slot: u8,
+    // What is left of this instant: cells to be discharged by the activation just handed out, tracts whose first end fired and those
+    // whose second end did, and a tract's second record.
+    pub(super) resets: Rows,
+    pub(super) forward: Rows,
+    pub(super) backward: Rows,
     pub(super) held: Option<Record>,
     // Due times apart from the rest: finding the next one scans nothing else.
     pub(super) wave_due: [Instant; T],
@@ -58,29 +65,6 @@ pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: us
     pub(super) running: Rows,
     pub(super) live_foci: Rows,
     pub(super) progress: [u32; F],
-}
-
-/// What is still to be done in this instant: a row each, walked in this order.
-#[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
-pub(super) struct Pending {
-    /// Cells to be discharged by the activation just handed out.
-    pub(super) resets: Rows,
-    pub(super) beats: Rows,
-    pub(super) arrivals: Rows,
-    pub(super) expiries: Rows,
-    pub(super) foci: Rows,
-    pub(super) captures: Rows,
-    /// Tracts whose first end fired, and those whose second end did.
-    pub(super) forward: Rows,
-    pub(super) backward: Rows,
-}
-
-impl Pending {
-    const fn is_empty(&self) -> bool {
-        let Self { resets, beats, arrivals, expiries, foci, captures, forward, backward } = *self;
-        let first = resets.with(beats).with(arrivals).with(expiries);
-        first.with(foci).with(captures).with(forward).with(backward).is_empty()
-    }
 }
 
 /// The wave in a tract, where there is one. When it arrives stands in the flat array.
@@ -111,7 +95,11 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
             at: start,
             seen: start,
             next: NEVER,
-            pending: Pending::default(),
+            due: NEVER,
+            slot: 0,
+            resets: Rows::NONE,
+            forward: Rows::NONE,
+            backward: Rows::NONE,
             held: None,
             wave_due: [NEVER; T],
             cell_due: [NEVER; C],
@@ -150,7 +138,7 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
         while let Some(row) = running.take_first() {
             heart.run_cell(CellId::new(row), FineInstant::at(start));
         }
-        heart.next = heart.soonest();
+        heart.refresh();
         Ok(heart)
     }
 
@@ -164,74 +152,105 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
     /// Bounded work: one micro-step and one record, plus the waves that set out in silence, at most one per tract end.
     pub fn poll(&mut self, now: Instant) -> Option<Record> {
         self.seen = self.seen.max(now);
-        loop {
-            if self.next > self.seen || self.next == NEVER {
-                return None;
-            }
-            if self.pending.is_empty() && self.held.is_none() {
-                self.begin(self.next);
-            }
-            let record = self.step();
-            self.refresh();
-            // Without a record the instant had nothing but silent waves left: whatever is due next has one.
-            if record.is_some() {
-                return record;
-            }
+        if self.next > self.seen || self.next == NEVER {
+            return None;
         }
+        let record = self.step();
+        self.next = self.upcoming();
+        record
     }
 
-    /// Finds again what is due next, after something has changed.
-    pub(super) fn refresh(&mut self) {
-        self.next = if self.pending.is_empty() && self.held.is_none() { self.soonest() } else { self.at };
-    }
-
-    fn soonest(&self) -> Instant {
-        let waves = self.wave_due.iter().chain(&self.cell_due);
-        waves.chain(&self.focus_due).chain(&self.capture_due).fold(self.beat_due, |soonest, &due| soonest.min(due))
-    }
-
-    /// Opens an instant: what is due in it becomes pending.
-    fn begin(&mut self, at: Instant) {
-        self.at = at;
-        self.pending.arrivals = Rows::due(&self.wave_due, &at);
-        self.pending.expiries = Rows::due(&self.cell_due, &at);
-        self.pending.foci = Rows::due(&self.focus_due, &at);
-        self.pending.captures = Rows::due(&self.capture_due, &at);
-        if self.beat_due == at {
-            self.pending.beats = core::mem::take(&mut self.beats);
-            self.beat_due = NEVER;
-        }
-    }
-
-    /// One micro-step of the instant; `None` when nothing of it is left.
     fn step(&mut self) -> Option<Record> {
-        if let Some(record) = self.held.take() {
-            return Some(record);
+        if self.held.is_some() {
+            return self.held.take();
         }
-        if let Some(row) = self.pending.resets.take_first() {
+        if let Some(row) = self.resets.take_first() {
             return self.reset(CellId::new(row));
         }
-        if let Some(row) = self.pending.beats.take_first() {
-            return self.beat_now(SiteId::new(row));
-        }
-        if let Some(row) = self.pending.arrivals.take_first() {
-            return self.arrive(TractId::new(row));
-        }
-        if let Some(row) = self.pending.expiries.take_first() {
-            return self.expire(CellId::new(row));
-        }
-        if let Some(row) = self.pending.foci.take_first() {
-            return self.fire_focus(FocusId::new(row));
-        }
-        if let Some(row) = self.pending.captures.take_first() {
-            return self.capture_now(SiteId::new(row));
-        }
-        // Second phase: every site that fires in this instant has done so.
-        loop {
-            let row = self.pending.forward.with(self.pending.backward).take_first()?;
-            if let Some(record) = self.decide(TractId::new(row)) {
-                return Some(record);
+        // Second phase, once no site fires in this instant any more.
+        if self.due > self.at {
+            while let Some(row) = self.forward.with(self.backward).take_first() {
+                if let Some(record) = self.decide(TractId::new(row)) {
+                    return Some(record);
+                }
+            }
+            if self.due > self.seen || self.due == NEVER {
+                return None;
             }
         }
+        // First phase, of this instant or the next one.
+        self.at = self.due;
+        let Some(row) = self.slot.checked_sub(1) else { return self.beat_now() };
+        let Some(row) = row.checked_sub(Self::WAVES) else { return self.arrive(TractId::new(row)) };
+        let Some(row) = row.checked_sub(Self::CELLS) else { return self.expire(CellId::new(row)) };
+        let Some(row) = row.checked_sub(Self::FOCI) else { return self.fire_focus(FocusId::new(row)) };
+        self.capture_now(SiteId::new(row))
     }
+
+    // Due times are numbered in the order in which they come within an instant: the script's beats 0, then waves, cells, foci, pulses.
+    const WAVES: u8 = rows(T);
+    const CELLS: u8 = rows(C);
+    const FOCI: u8 = rows(F);
+
+    pub(super) const fn wave_slot(id: TractId) -> u8 {
+        id.row().wrapping_add(1) // at most 1 + 4 · 32 in all
+    }
+
+    pub(super) const fn cell_slot(id: CellId) -> u8 {
+        id.row().wrapping_add(1).wrapping_add(Self::WAVES)
+    }
+
+    pub(super) const fn focus_slot(id: FocusId) -> u8 {
+        id.row().wrapping_add(1).wrapping_add(Self::WAVES).wrapping_add(Self::CELLS)
+    }
+
+    pub(super) const fn capture_slot(id: SiteId) -> u8 {
+        id.row().wrapping_add(1).wrapping_add(Self::WAVES).wrapping_add(Self::CELLS).wrapping_add(Self::FOCI)
+    }
+
+    pub(super) const BEAT_SLOT: u8 = 0;
+
+    /// Takes note that the due time of `slot` is now `to`. Everything is looked at again only where it was the soonest that moved.
+    pub(super) fn moved(&mut self, slot: u8, to: Instant) {
+        if slot == self.slot {
+            self.find_soonest();
+        } else if (to, slot) < (self.due, self.slot) {
+            (self.due, self.slot) = (to, slot);
+        }
+    }
+
+    /// The soonest due time, and of several the first in order.
+    fn find_soonest(&mut self) {
+        let (mut due, mut slot, mut looked_at) = (self.beat_due, Self::BEAT_SLOT, 0_u8);
+        let mut look = |times: &[Instant]| {
+            for &time in times {
+                looked_at = looked_at.wrapping_add(1);
+                if time < due {
+                    (due, slot) = (time, looked_at);
+                }
+            }
+        };
+        look(&self.wave_due);
+        look(&self.cell_due);
+        look(&self.focus_due);
+        look(&self.capture_due);
+        (self.due, self.slot) = (due, slot);
+    }
+
+    /// Finds again what is to be done next, after an input has changed something.
+    pub(super) fn refresh(&mut self) {
+        self.find_soonest();
+        self.next = self.upcoming();
+    }
+
+    const fn upcoming(&self) -> Instant {
+        let waiting = self.resets.with(self.forward).with(self.backward);
+        if waiting.is_empty() && self.held.is_none() { self.due } else { self.at }
+    }
+}
+
+/// The rows of a table, which construction has found to be at most 32.
+#[allow(clippy::as_conversions, reason = "at most 32")]
+const fn rows(count: usize) -> u8 {
+    count as u8
 }

@@ -17,11 +17,12 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         let tract = self.anatomy.tract(id)?;
         let crossing = *self.crossings.get(row)?;
         *self.wave_due.get_mut(row)? = NEVER;
+        self.moved(Self::wave_slot(id), NEVER);
         let passed = self.passed.get_mut(row)?;
         *passed = (*passed).max(super::last::Last::at(crossing.pass_at));
         let (site, end) = match crossing.direction {
-            Direction::Forward => (tract.to, &mut self.pending.backward),
-            Direction::Backward => (tract.from, &mut self.pending.forward),
+            Direction::Forward => (tract.to, &mut self.backward),
+            Direction::Backward => (tract.from, &mut self.forward),
         };
         let fired = *self.fired.get(usize::from(site.row()))?;
         if fired.is(self.at) {
@@ -36,8 +37,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         }
         let record = self.activate(site, Cause::new(CauseKind::Conducted, id.row()));
         let end = match crossing.direction {
-            Direction::Forward => &mut self.pending.backward,
-            Direction::Backward => &mut self.pending.forward,
+            Direction::Forward => &mut self.backward,
+            Direction::Backward => &mut self.forward,
         };
         *end = end.without(Rows::one(id.row()));
         record
@@ -50,7 +51,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         self.run_cell(id, due);
         let record = self.fire(site, Cause::new(CauseKind::Own, id.row()));
         // It has just begun its interval, with the fraction of the last one carried over.
-        self.pending.resets = self.pending.resets.without(Rows::one(id.row()));
+        self.resets = self.resets.without(Rows::one(id.row()));
         record
     }
 
@@ -60,7 +61,6 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         let left = self.cell_due.get(usize::from(id.row()))?.saturating_since(self.at);
         let cause = *self.causes.get(usize::from(site.row()))?;
         self.run_cell(id, FineInstant::at(self.at));
-        self.pending.expiries = self.pending.expiries.without(Rows::one(id.row()));
         Some(Record::new(self.at, Kind::Reset, id.row(), cause).with_details(short(left), 0))
     }
 
@@ -72,6 +72,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         {
             *fine = from.plus(cell.interval);
             *due = fine.nearest();
+            let due = *due;
+            self.moved(Self::cell_slot(id), due);
         }
     }
 
@@ -104,10 +106,17 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
                 *progress = position.saturating_add(1);
             }
         }
+        let due = *due;
+        self.moved(Self::focus_slot(id), due);
     }
 
-    /// A script's beat.
-    pub(super) fn beat_now(&mut self, site: SiteId) -> Option<Record> {
+    /// The first of the script's beats of this instant.
+    pub(super) fn beat_now(&mut self) -> Option<Record> {
+        let site = SiteId::new(self.beats.take_first()?);
+        if self.beats.is_empty() {
+            self.beat_due = NEVER;
+            self.moved(Self::BEAT_SLOT, NEVER);
+        }
         let cause = *self.beat_causes.get(usize::from(site.row()))?;
         self.fire(site, cause)
     }
@@ -116,6 +125,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     pub(super) fn capture_now(&mut self, site: SiteId) -> Option<Record> {
         let row = usize::from(site.row());
         *self.capture_due.get_mut(row)? = NEVER;
+        self.moved(Self::capture_slot(site), NEVER);
         let cause = Cause::new(CauseKind::Pulse, *self.capture_channel.get(row)?);
         let since = self.fired.get(row)?.since(self.at);
         // Not answered if the site fired at the leading edge either: had it done so before the pulse, that would have found it refractory.
@@ -142,9 +152,9 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         *self.fired.get_mut(row)? = super::last::Last::at(self.at);
         *self.causes.get_mut(row)? = cause;
         let links = self.anatomy.links(site)?;
-        self.pending.resets = links.cells.and(self.running);
-        self.pending.forward = self.pending.forward.with(links.forward);
-        self.pending.backward = self.pending.backward.with(links.backward);
+        self.resets = links.cells.and(self.running);
+        self.forward = self.forward.with(links.forward);
+        self.backward = self.backward.with(links.backward);
         if F > 0 {
             self.count_trigger(site, cause);
         }
@@ -153,17 +163,20 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
 
     /// Premature foci that wait for this site count its activation.
     fn count_trigger(&mut self, site: SiteId, cause: Cause) {
-        let states = self.focus_due.iter_mut().zip(&mut self.progress);
-        for ((row, focus), (due, count)) in (0_u8..).zip(self.foci).zip(states) {
+        for (row, focus) in (0_u8..).zip(self.foci) {
             let FocusKind::Premature { trigger, coupling, every } = focus.kind else { continue };
             let own = cause == Cause::new(CauseKind::Focus, row);
+            let position = usize::from(row);
+            let (Some(due), Some(count)) = (self.focus_due.get_mut(position), self.progress.get_mut(position)) else { continue };
             if trigger != site || own || *due != NEVER || !self.live_foci.has(row) {
                 continue;
             }
             *count = count.saturating_add(1);
             if *count >= every {
                 *count = 0;
-                *due = self.at.saturating_add(coupling);
+                let fires_at = self.at.saturating_add(coupling);
+                *due = fires_at;
+                self.moved(Self::focus_slot(FocusId::new(row)), fires_at);
             }
         }
     }

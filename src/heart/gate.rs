@@ -61,7 +61,25 @@ struct Newcomer {
     obstacle: Option<BlockReason>,
 }
 
+impl Newcomer {
+    const fn flight(&self, now: Instant) -> Flight {
+        let Self { direction, delay, pass_at, .. } = *self;
+        Flight { direction, due: now.saturating_add(delay), pass_at, took: delay }
+    }
+}
+
 impl Gate<'_> {
+    /// A single wave at an empty tract, if nothing stops it.
+    pub(super) fn enters_freely(&self, forward: bool, backward: bool, now: Instant) -> Option<Flight> {
+        let direction = match (self.flight, forward, backward) {
+            (None, true, false) => Direction::Forward,
+            (None, false, true) => Direction::Backward,
+            _ => return None,
+        };
+        let newcomer = self.newcomer(direction, self.passed, now);
+        if newcomer.obstacle.is_none() { Some(newcomer.flight(now)) } else { None }
+    }
+
     /// Decides both ends at once, from the state before the instant: nothing depends on which end is looked at first.
     pub(super) fn decide(&self, forward: bool, backward: bool, now: Instant) -> Decided {
         match (self.flight, forward, backward) {
@@ -100,11 +118,7 @@ impl Gate<'_> {
     fn alone(&self, newcomer: &Newcomer, now: Instant) -> (Fate, Last) {
         match newcomer.obstacle {
             Some(reason) => self.blocked(newcomer, reason, self.passed, now),
-            None => {
-                let Newcomer { direction, delay, pass_at, .. } = *newcomer;
-                let flight = Flight { direction, due: now.saturating_add(delay), pass_at, took: delay };
-                (Fate::Enters(flight), self.passed)
-            }
+            None => (Fate::Enters(newcomer.flight(now)), self.passed),
         }
     }
 

@@ -31,8 +31,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     /// # Errors
     /// [`NotYet`] if something is due at or before `at`: poll up to `at` until nothing comes, then offer the pulse again.
     pub fn pulse(&mut self, site: SiteId, pulse: Pulse, at: Instant) -> Result<PulseAnswer, NotYet> {
-        if self.next <= at && self.next != NEVER {
-            return Err(NotYet(self.next));
+        if let Some(next) = self.next_at().filter(|&next| next <= at) {
+            return Err(NotYet(next));
         }
         let at = at.max(self.at);
         let row = usize::from(site.row());
@@ -84,7 +84,6 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         if let Some(due) = self.cell_due.get_mut(usize::from(cell.row())) {
             *due = NEVER;
             self.running = self.running.without(Rows::one(cell.row()));
-            self.pending.expiries = self.pending.expiries.without(Rows::one(cell.row()));
         }
         if let Some(focus) = self.series_in_place_of(cell) {
             self.stop_focus(focus);
@@ -156,7 +155,6 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         self.accept(at)?;
         self.cell_due = [NEVER; C];
         self.running = Rows::NONE;
-        self.pending.expiries = Rows::NONE;
         for (row, _) in (0_u8..).zip(self.foci) {
             self.stop_focus(FocusId::new(row));
         }
@@ -168,7 +166,10 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
 
     /// The instant at which an input given for `at` counts.
     fn accept(&self, at: Instant) -> Result<Instant, NotYet> {
-        if self.next < at { Err(NotYet(self.next)) } else { Ok(at.max(self.at)) }
+        match self.next_at() {
+            Some(next) if next < at => Err(NotYet(next)),
+            _ => Ok(at.max(self.at)),
+        }
     }
 
     fn rows_of(&self, tract: TractId) -> Rows {
@@ -184,6 +185,5 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
             *due = NEVER;
         }
         self.live_foci = self.live_foci.without(Rows::one(focus.row()));
-        self.pending.foci = self.pending.foci.without(Rows::one(focus.row()));
     }
 }

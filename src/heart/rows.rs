@@ -1,6 +1,7 @@
 //! A set of table rows in one word, walked in table order.
 
-use crate::base::word;
+use crate::base::{low_u8, word};
+use core::num::NonZeroU32;
 
 /// Rows of a table of at most 32.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
@@ -20,12 +21,6 @@ impl Rows {
     /// Every row of a table of so many.
     pub(super) fn all(rows: usize) -> Self {
         (0..=31).take(rows).map(Self::one).fold(Self::NONE, Self::with)
-    }
-
-    /// The rows whose time is exactly `at`.
-    pub(super) fn due<T: PartialEq>(times: &[T], at: &T) -> Self {
-        let due = times.iter().zip(0..=31).filter(|&(time, _)| time == at);
-        due.map(|(_, row)| Self::one(row)).fold(Self::NONE, Self::with)
     }
 
     pub(super) const fn with(self, other: Self) -> Self {
@@ -50,8 +45,8 @@ impl Rows {
 
     /// Takes the first row out.
     pub(super) fn take_first(&mut self) -> Option<u8> {
-        let row = u8::try_from(self.0.trailing_zeros()).ok().filter(|_| self.0 != 0);
+        let rows = NonZeroU32::new(self.0)?;
         self.0 &= self.0.wrapping_sub(1);
-        row
+        Some(low_u8(rows.trailing_zeros()))
     }
 }
