@@ -13,8 +13,8 @@
 
 mod judged;
 
-use judged::{A, V, at_60, checked, end, findings, judge, pulse_on, rate, signal_on, v, vp, vvi};
-use phase4::audit::{AuditSettings, Outcome, Tolerance};
+use judged::{A, V, at_60, checked, end, findings, judge, pulse_on, pulse_us, rate, signal_on, v, vp, vvi};
+use phase4::audit::{AuditSettings, Decision, How, Outcome, RuleId, Tolerance};
 use phase4::base::{Mode, Program, Record, Settings, Span};
 
 /// Rows 10 to 14 and 16 of the worked rows use a refractory period of 320 ms (250 ms in the atrium), blanking 100 ms.
@@ -67,4 +67,18 @@ fn worked_rows_are_judged_clean() {
 fn a_late_pulse_is_one_finding() {
     let found = findings(&vvi(), &[vp(1000), vp(2020), vp(3020), end(3500)]);
     assert_eq!(found.len(), 1, "{found:#?}");
+}
+
+/// Tolerance 8 ms, uncertainty 0 and 1 ms: the first microsecond beyond both is late, the one before is not broken.
+#[test]
+fn the_first_microsecond_too_late_is_late_and_not_early() {
+    for (uncertainty, last) in [(0, 1_008_000), (1, 1_009_000)] {
+        let settings = AuditSettings::new(&vvi()).with_uncertainty(Span::from_millis(uncertainty), Decision::Guarded);
+        let first = |at| {
+            let (judgements, _) = judge(&vvi(), &settings, &[pulse_us(V, at), end(1_500)]);
+            judgements.first().map(|first| (first.outcome == Outcome::Broken, first.how, first.rule))
+        };
+        assert_eq!(first(last + 1), Some((true, How::Late, RuleId::Lr1)));
+        assert_eq!(first(last), Some((false, How::OnTime, RuleId::Lr1)));
+    }
 }

@@ -104,7 +104,7 @@ impl Windows {
             paced,
             sensed,
             swapped: (None, None),
-            hysteresis: set.hysteresis.is_some(),
+            hysteresis: set.hysteresis.is_some() && program.senses().is_some(),
             refractory: end_of(set.refractory, &settings.refractory, set.edge),
             blanking: end_of(set.blanking, &settings.blanking, set.edge),
             must_see: must_see.0,

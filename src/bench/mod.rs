@@ -1,5 +1,6 @@
 //! Heart, lead, device and auditor joined in a closed loop, driven by a script.
 
+pub mod canary;
 mod check;
 mod closed_loop;
 mod cues;

@@ -90,7 +90,7 @@ pub static BANK: [FaultRow; 18] = [
         ..whole(
             13,
             "a sense in the tick of an expiry restarts the timer, and the pulse comes too",
-            &["CM1", "EN3", "IN1"],
+            &["CM1", "EN3"],
             "X",
             Needs::Sensing,
         )
