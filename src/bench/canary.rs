@@ -111,7 +111,7 @@ fn watch<const H: usize>(
         length: longest_escape(program).saturating_mul(CYCLES),
         seed: 0,
     };
-    let mut bench = Bench::<_, 5, 4, 3, 0, SCRIPT, 1>::new(&setup, Some(device))?;
+    let mut bench = Bench::<_, 5, 4, 3, 0, SCRIPT, 3>::new(&setup, Some(device))?;
     while let Some(entry) = bench.poll(Instant::MAX) {
         let Entry::Record(record) = entry else { continue };
         auditor.observe(&record);
