@@ -13,7 +13,9 @@
 
 mod judged;
 
-use judged::{A, V, at_60, checked, end, findings, judge, pulse_on, pulse_us, rate, signal_on, v, vp, vvi};
+use judged::{
+    A, FAINT, LOUD, V, at_60, checked, end, findings, findings_by, judge, pulse_on, pulse_us, rate, signal_on, v, vp, vvi,
+};
 use phase4::audit::{AuditSettings, Decision, How, Outcome, RuleId, Tolerance};
 use phase4::base::{Mode, Program, Record, Settings, Span};
 
@@ -81,4 +83,16 @@ fn the_first_microsecond_too_late_is_late_and_not_early() {
         assert_eq!(first(last + 1), Some((true, How::Late, RuleId::Lr1)));
         assert_eq!(first(last), Some((false, How::OnTime, RuleId::Lr1)));
     }
+}
+
+/// A signal on its way to its sense when a pulse becomes overdue: one that may be sensed explains the silence, one that is too
+/// small for that explains nothing, and the missing pulse is found.
+#[test]
+fn a_faint_signal_before_the_deadline_hides_no_missing_pulse() {
+    let mut settings = AuditSettings::new(&vvi());
+    settings.detect = (Span::from_millis(4), Span::from_millis(10));
+    let found = |peak| findings_by(&vvi(), &settings, &[vp(1000), signal_on(V, 2002, peak), end(2900)]);
+    assert!(found(LOUD).is_empty());
+    let quoted: Vec<_> = found(FAINT).iter().map(|finding| (finding.how, finding.rule)).collect();
+    assert_eq!(quoted, [(How::Missing, RuleId::Lr1)]);
 }

@@ -17,8 +17,8 @@ use phase4::device::{Allowance, BANK, Device, Fault, FaultRow, Needs, PROBE_WIDT
 use timeline::{Shown, at, at_ms, checked, ms, pulses_us, v};
 
 /// What the bank's smallest sizes are stated for: a tolerance of 8 ms and an uncertainty of 1 ms.
-const BENCH: Allowance = Allowance { interval: ms(9), edge: ms(9), ceiling: ms(291), apart: ms(60) };
-const LOCKSTEP: Allowance = Allowance { interval: Span::ZERO, edge: Span::ZERO, ceiling: ms(292), apart: ms(60) };
+const BENCH: Allowance = Allowance { interval: ms(9), edge: ms(9), ceiling: ms(291) };
+const LOCKSTEP: Allowance = Allowance { interval: Span::ZERO, edge: Span::ZERO, ceiling: ms(292) };
 
 /// VVI 60 /min, blanking 100 ms, refractory 250 ms.
 fn p1() -> Settings {

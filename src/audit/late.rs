@@ -22,11 +22,15 @@ pub(super) struct Overdue {
 impl<const H: usize> Auditor<H> {
     /// No state is left that would not have paced by now.
     pub(super) fn judge_silence(&mut self, at: Micros) {
-        // A signal on its way to its sense may have come first: silence then tells that it was sensed.
-        let first = self.signals.front().map(|waiting| waiting.signal.at.saturating_add(self.windows.detect.lo));
-        if first.is_some_and(|first| first < at) {
-            self.settle_signal(at, false);
-            return;
+        // A signal on its way to its sense may have come first: silence then tells that it was sensed. One that no state can have
+        // sensed excuses nothing, and is settled as if silence were not there.
+        if let Some(waiting) = self.signals.front() {
+            let windows = &self.windows;
+            if waiting.signal.at.saturating_add(windows.detect.lo) < at {
+                let excuses = self.states.iter().any(|state| windows.fate(state, &waiting.signal, None).sensed().is_some());
+                self.settle_signal(if excuses { at } else { waiting.signal.at }, false);
+                return;
+            }
         }
         if self.overdue.is_some() {
             // No second finding while one is open; the next signal or pulse begins anew.

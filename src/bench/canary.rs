@@ -16,9 +16,6 @@ const STREAM: Stream = Stream(0x6361_6E61);
 /// How many cycles a canary lasts, each as long as the longest escape interval.
 const CYCLES: u64 = 8;
 
-/// How far a probe's beat keeps from the ends of its window: more than the auditor takes for a window that is a little off.
-const APART: Span = Span::from_millis(60);
-
 /// What became of a canary.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct CanaryResult {
@@ -175,7 +172,6 @@ fn allowance(program: &Program, settings: &AuditSettings) -> Allowance {
         interval: of(&settings.lower, longest).max(of(&settings.hysteresis, longest)),
         edge: of(&settings.refractory, refractory).max(of(&settings.blanking, refractory)),
         ceiling: settings.limits.ceiling.saturating_sub(settings.uncertainty),
-        apart: APART,
     }
 }
 

@@ -12,8 +12,6 @@ pub struct Allowance {
     pub edge: Span,
     /// The shortest span between two pulses that is accepted for certain.
     pub ceiling: Span,
-    /// How far a beat keeps from both ends of its window, so that a judge does not take it for one at the other side of an end.
-    pub apart: Span,
 }
 
 /// The smallest script that shows a fault: a silent heart, and at most two signals in every cycle.
@@ -35,6 +33,8 @@ pub const PROBE_WIDTH: Span = Span::from_millis(1);
 
 /// Above an allowance by this much is above it for certain: a microsecond of rounding at each end of an interval.
 const CLEARLY: Span = Span::from_micros(2);
+/// How far a beat keeps from both ends of its window: more than a judge takes for a window that is a little off (50 ms).
+const APART: Span = Span::from_millis(60);
 const TICK: Span = Span::from_micros(1);
 const PAIR: Span = Span::from_micros(2);
 
@@ -69,7 +69,6 @@ struct Cycle {
     /// The least distance from an edge that is clear of it.
     clear: Span,
     ceiling: Span,
-    apart: Span,
 }
 
 impl Cycle {
@@ -88,7 +87,6 @@ impl Cycle {
             shows: allowance.interval.saturating_add(CLEARLY),
             clear: allowance.edge.saturating_add(CLEARLY),
             ceiling: allowance.ceiling,
-            apart: allowance.apart,
         }
     }
 
@@ -136,8 +134,8 @@ impl Cycle {
     /// A beat so close before the expiry that its pulse, which comes all the same, is a second one for the same instant.
     fn both(&self, quiet: Probe) -> Option<(Size, Probe)> {
         let sense = self.lower.saturating_sub(self.shows);
-        let near = self.shows.saturating_add(self.shows) <= self.apart;
-        let far_from_refractory = sense >= self.refractory.saturating_add(self.clear).saturating_add(self.apart);
+        let near = self.shows.saturating_add(self.shows) <= APART;
+        let far_from_refractory = sense >= self.refractory.saturating_add(self.clear).saturating_add(APART);
         let probe = Probe { beat: Some(self.onset_of(sense)?), ..quiet };
         (near && far_from_refractory).then_some((Size::Span(self.shows.saturating_add(PAIR)), probe))
     }
@@ -162,7 +160,7 @@ impl Cycle {
         };
         let room = self.shows.saturating_add(self.clear);
         let has_room = self.is_alert(sense) && sense.saturating_add(room).saturating_add(room) <= self.lower;
-        let is_near = self.clear <= halved(self.apart);
+        let is_near = self.clear <= halved(APART);
         let probe = Probe { signal: Some(self.onset_of(sense)?), ..quiet };
         (is_near && has_room && self.is_plain(sense)).then_some((Size::Span(longer), probe))
     }
@@ -181,7 +179,7 @@ impl Cycle {
     /// The onset of a beat in the middle of the alert window, far from both its ends.
     fn beat(&self) -> Option<Span> {
         let sense = halved(self.refractory.saturating_add(self.lower));
-        let far = self.is_alert(sense.saturating_sub(self.apart)) && self.is_alert(sense.saturating_add(self.apart));
+        let far = self.is_alert(sense.saturating_sub(APART)) && self.is_alert(sense.saturating_add(APART));
         if far { self.onset_of(sense) } else { None }
     }
 
