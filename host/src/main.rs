@@ -1,3 +1,7 @@
 //! The command `phase4`.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    phase4_host::cli::main()
+}

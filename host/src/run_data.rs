@@ -1,6 +1,7 @@
 //! Everything one run has to tell: what was asked, what happened, how it was judged. The summary, the log files and the report
 //! are drawn from this and from nothing else.
 
+pub use phase4::audit::Verdict;
 use phase4::audit::{AuditSettings, Judgement, RuleId, Score};
 use phase4::base::{Instant, Program, Record, Span};
 
@@ -63,47 +64,8 @@ pub struct RunData {
     pub start: Instant,
     /// How long it ran.
     pub simulated: Span,
-    /// Why it ended, as the [`End`](phase4::base::Kind::End) record says: 0 length reached, 1 a step, 2 interrupted, 3 the device spins,
-    /// 4 too many events.
+    /// Why it ended, as the [`End`](phase4::base::Kind::End) record says: 0 length reached, 1 a step, 2 interrupted, 3 the device spins.
     pub end_reason: u32,
-}
-
-/// The answer of a run.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
-pub enum Verdict {
-    /// Every rule that was tried held.
-    Holds,
-    /// At least one rule was broken.
-    Broken,
-    /// Too little could be decided, or something asked for was not covered.
-    Undecided,
-    /// The judge missed its own planted fault: nothing counts.
-    Void,
-    /// There was nothing to judge: no device, or a mode that does nothing.
-    Unjudged,
-}
-
-impl Verdict {
-    /// The verdict in one lower-case word.
-    pub const fn word(self) -> &'static str {
-        match self {
-            Self::Holds => "holds",
-            Self::Broken => "broken",
-            Self::Undecided => "undecided",
-            Self::Void => "void",
-            Self::Unjudged => "unjudged",
-        }
-    }
-
-    /// The exit code of the command that gave it.
-    pub const fn exit_code(self) -> u8 {
-        match self {
-            Self::Holds | Self::Unjudged => 0,
-            Self::Broken => 1,
-            Self::Undecided => 3,
-            Self::Void => 4,
-        }
-    }
 }
 
 /// A step of the script in the scenario's words.

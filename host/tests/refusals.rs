@@ -169,3 +169,17 @@ fn any_changed_byte_of_a_good_file_is_read_or_refused() {
         }
     }
 }
+
+fn audit(lines: &str) -> String {
+    refused(&format!("[run]\nlength = \"1 s\"\n[device]\nmode = \"VVI\"\nlower_rate = \"60 /min\"\n[audit]\n{lines}\n"))
+}
+
+told! {
+    a_tolerance_beyond_its_window: audit("tolerance = \"600 ms\"");
+    a_share_of_everything: audit("tolerance = { share = \"80 %\" }");
+    a_ceiling_beyond_the_lower_rate: audit("ceiling = \"40 /min\"");
+    a_pause_shorter_than_the_escape: audit("longest_pause = \"900 ms\"");
+    a_window_that_ends_before_it_begins: audit("vulnerable = \"400..150 ms\"");
+    an_uncertainty_beyond_reason: audit("uncertainty = \"1 s\"");
+    a_sensitivity_without_bounds: audit("tolerance.sensitivity = \"95 %\"");
+}

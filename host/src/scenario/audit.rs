@@ -1,6 +1,7 @@
 //! `[audit]`: how the device is judged.
 
 use super::device::set;
+use super::param::{Written, complaint};
 use super::schema::{TOLERANCE, TOLERANCES};
 use super::units::{interval, span, span_range};
 use super::walk::Section;
@@ -14,17 +15,12 @@ use std::ops::Range;
 pub struct AuditPart {
     /// What the auditor is told.
     pub settings: AuditSettings,
-    /// The least share of decided cases, in thousandths: below it a run is undecided.
-    pub decide_thousandths: u32,
     /// Coverage cells that must be hit, by name, with the place in the file where each is asked for.
     pub require: Vec<(String, Range<usize>)>,
 }
 
-/// The share of decided cases asked for where nothing else is said.
-const DECIDE_THOUSANDTHS: u32 = 900;
-
-/// Reads how this program is judged.
-pub(super) fn read(section: &Section<'_, '_>, program: &Program) -> AuditPart {
+/// Reads how this program is judged; `device` is the table that tells the program.
+pub(super) fn read(section: &Section<'_, '_>, device: &Section<'_, '_>, program: &Program) -> AuditPart {
     let mut settings = AuditSettings::new(program);
     tolerances(section, &mut settings);
     set(&mut settings.uncertainty, section.read("uncertainty", span));
@@ -41,8 +37,29 @@ pub(super) fn read(section: &Section<'_, '_>, program: &Program) -> AuditPart {
     set(&mut limits.vulnerable, section.read("vulnerable", window));
     settings.limits = check_limits(section, limits);
     let decide = section.share_millionths("decide").map(|millionths| millionths.checked_div(1_000).unwrap_or(0));
+    set(&mut settings.decide_thousandths, decide);
+    if let Err(error) = settings.check(program) {
+        section.complain(complaint(&error, |parameter| written(section, device, parameter)));
+    }
     let require = section.texts("require").into_iter().map(|text| (text.value.to_owned(), text.span)).collect();
-    AuditPart { settings, decide_thousandths: decide.unwrap_or(DECIDE_THOUSANDTHS), require }
+    AuditPart { settings, require }
+}
+
+/// Where a parameter of the audit settings was written.
+fn written(audit: &Section<'_, '_>, device: &Section<'_, '_>, parameter: &str) -> Written {
+    let in_tolerance = match parameter {
+        "tolerance_share" => Some("share"),
+        "sensitivity_tolerance" => Some("sensitivity"),
+        _ => None,
+    };
+    match parameter {
+        "lower_rate" | "hysteresis_rate" | "refractory" | "blanking" => Written::new(device, parameter),
+        _ => match in_tolerance {
+            Some(key) if audit.has_table("tolerance") => Written::new(&audit.open("tolerance", &TOLERANCES), key),
+            Some(_) => Written::new(audit, "tolerance"),
+            None => Written::new(audit, parameter),
+        },
+    }
 }
 
 fn check_limits(section: &Section<'_, '_>, limits: Limits) -> Limits {

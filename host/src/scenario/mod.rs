@@ -143,7 +143,7 @@ fn read<'a>(walk: &Walk<'a>, table: &Spanned<DeTable<'a>>, folder: &Path) -> Res
     let lead_tables = Channel::ALL.map(|channel| (electrode(channel), lead::open(&leads, channel)));
     let heart = heart::read(&heart_table, lead_tables, folder)?;
     let audit_table = file.open("audit", &schema::AUDIT);
-    let audit = program.map(|program| audit::read(&audit_table, &program));
+    let audit = program.map(|program| audit::read(&audit_table, &device_table, &program));
     let thousandths = audit.as_ref().map_or(200, |audit| audit.settings.sensitivity_thousandths);
     let (length, seed, start) = read_run(&run, heart.as_ref());
     let Some(heart) = heart else { return Ok(None) };

@@ -1,6 +1,6 @@
 //! What the library refuses, said where the user wrote it.
 
-use super::units::{interval, show_micros, show_microvolts, show_rate};
+use super::units::{Thousandths, interval, show_micros, show_microvolts, show_rate};
 use super::walk::Section;
 use crate::refusal::Complaint;
 use phase4::base::{ParamError, Problem};
@@ -72,6 +72,8 @@ fn show(parameter: &str, value: u64) -> String {
     match last(parameter) {
         "sensitivity" | "peak" => show_microvolts(value),
         "amplitude" | "rheobase" => show_microvolts(value.saturating_mul(1_000)),
+        "tolerance_share" => format!("{} %", Thousandths(value.checked_div(10).unwrap_or(0))),
+        "sensitivity_tolerance" | "decide" => format!("{} %", Thousandths(value.saturating_mul(100))),
         "times" | "step" | "every" | "fault" | "foci" | "intervals" => value.to_string(),
         _ if is_rate(parameter) && value > 0 => format!("{} ({})", show_micros(value), show_rate(value)),
         _ => show_micros(value),

@@ -372,7 +372,7 @@ pub(super) fn signed(value: u64, negative: bool, at: &Range<usize>) -> Result<De
 }
 
 /// A number of thousandths as a decimal number without needless zeros.
-struct Thousandths(u64);
+pub(super) struct Thousandths(pub(super) u64);
 
 impl fmt::Display for Thousandths {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {

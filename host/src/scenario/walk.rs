@@ -33,6 +33,8 @@ impl<'a> Walk<'a> {
     pub(super) fn into_complaints(self) -> Vec<Complaint> {
         let mut complaints = self.complaints.into_inner();
         complaints.sort_by_key(Complaint::place);
+        // A table that was opened twice has complained twice.
+        complaints.dedup();
         complaints
     }
 }
