@@ -3,6 +3,7 @@
 mod auditor;
 mod check;
 mod clock;
+pub mod coverage;
 mod envelope;
 mod history;
 mod hypothesis;
@@ -19,6 +20,7 @@ mod verdict;
 mod windows;
 
 pub use auditor::Auditor;
+pub use coverage::Coverage;
 pub use judgement::{Anchor, AnchorKind, Hint, How, Judgement, Outcome, Window};
 pub use rule::{RULE_SET, RuleId, RuleSet, Score, Tier};
 pub use settings::{AuditSettings, Decision, Limits, Tolerance};
