@@ -14,7 +14,8 @@
 mod judged;
 
 use judged::{
-    A, FAINT, LOUD, V, at_60, checked, end, findings, findings_by, judge, pulse_on, pulse_us, rate, signal_on, v, vp, vvi,
+    A, FAINT, LOUD, V, at_60, checked, end, findings, findings_by, judge, pulse_on, pulse_us, rate, signal_on, signal_us, v, vp,
+    vvi,
 };
 use phase4::audit::{AuditSettings, Decision, How, Outcome, RuleId, Tolerance};
 use phase4::base::{Mode, Program, Record, Settings, Span};
@@ -86,13 +87,18 @@ fn the_first_microsecond_too_late_is_late_and_not_early() {
 }
 
 /// A signal on its way to its sense when a pulse becomes overdue: one that may be sensed explains the silence, one that is too
-/// small for that explains nothing, and the missing pulse is found.
+/// small for that explains nothing wherever it lies, to the microsecond, and the missing pulse is found.
 #[test]
 fn a_faint_signal_before_the_deadline_hides_no_missing_pulse() {
-    let mut settings = AuditSettings::new(&vvi());
-    settings.detect = (Span::from_millis(4), Span::from_millis(10));
-    let found = |peak| findings_by(&vvi(), &settings, &[vp(1000), signal_on(V, 2002, peak), end(2900)]);
-    assert!(found(LOUD).is_empty());
-    let quoted: Vec<_> = found(FAINT).iter().map(|finding| (finding.how, finding.rule)).collect();
-    assert_eq!(quoted, [(How::Missing, RuleId::Lr1)]);
+    for (uncertainty, decision) in [(0, Decision::Simple), (2, Decision::Simple), (2, Decision::Guarded)] {
+        let mut settings = AuditSettings::new(&vvi()).with_uncertainty(Span::from_millis(uncertainty), decision);
+        settings.detect = (Span::from_millis(4), Span::from_millis(10));
+        let found = |onset, peak| findings_by(&vvi(), &settings, &[vp(1000), signal_us(V, onset, peak, 40_000), end(2900)]);
+        assert!(found(2_002_000, LOUD).is_empty());
+        let coincidences = (1_980..2_020).flat_map(|ms| [ms * 1_000, ms * 1_000 + 1]);
+        for onset in coincidences {
+            let quoted: Vec<_> = found(onset, FAINT).iter().map(|finding| (finding.how, finding.rule)).collect();
+            assert_eq!(quoted, [(How::Missing, RuleId::Lr1)], "{uncertainty} ms, {decision:?}, onset at {onset} us");
+        }
+    }
 }

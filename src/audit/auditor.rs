@@ -331,14 +331,14 @@ impl<const H: usize> Auditor<H> {
         self.envelope.pause_ends().map(|end| end.saturating_add(self.windows.uncertainty))
     }
 
-    /// Does the one thing due at or before `now`: at the same moment signals first, then silence, then pulses. A pulse at the
-    /// moment of silence is the first that comes too late.
+    /// Does the one thing due at or before `now`: at the same moment silence first, which settles the signals that bear on it, then
+    /// signals, then pulses. A pulse at the moment of silence is the first that comes too late.
     fn step(&mut self, now: Micros) {
         let Some(at) = self.wake.filter(|at| *at <= now) else { return };
-        if self.signal_due() == Some(at) {
-            self.settle_signal(at, false);
-        } else if self.silence_due() == Some(at) {
+        if self.silence_due() == Some(at) {
             self.judge_silence(at);
+        } else if self.signal_due() == Some(at) {
+            self.settle_signal(at, false);
         } else if self.pulse_due() == Some(at) {
             if let Some(pulse) = self.pulses.pop_front() {
                 self.judge_pulse(pulse);
