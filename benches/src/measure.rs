@@ -1,0 +1,1 @@
+//! Clocks and memory of this process.

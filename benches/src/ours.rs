@@ -1,0 +1,157 @@
+//! phase4 itself: its closed loop on the common rhythm, its heart alone, and the plain heart with a VVI device.
+
+use crate::rhythm::{BLOCKED, ESCAPE, LINK, LOWER, NODE_BASE, NODE_GAIN, NODE_TAU, REFRACTORY, SINUS, Tally};
+use phase4::audit::AuditSettings;
+use phase4::base::{
+    Decay, Deviation, Instant, Interval, Kind, MilliVolts, Mode, Program, Rate, Record, RecordHash, Settings, SiteId,
+    Span, TractId,
+};
+use phase4::bench::{Act, Amount, Bench, Coupling, Event, Setup, Sink, Step, When};
+use phase4::device::ReferenceDevice;
+use phase4::heart::{Anatomy, CellParams, Fraction, Heart, SiteParams, TractParams, Way, Ways, plain};
+use phase4::lead::{ChannelParams, LeadParams, NearField};
+
+const fn us(micros: u64) -> Span {
+    Span::from_micros(micros)
+}
+
+/// Takes the ventricular activations out of a run's records.
+struct Beats {
+    site: SiteId,
+    tally: Tally,
+}
+
+impl Sink for Beats {
+    #[inline]
+    fn take(&mut self, record: &Record) {
+        if record.kind == Kind::Activated && record.place == self.site.row() {
+            self.tally.beat(record.at.as_micros());
+        }
+    }
+}
+
+const ATRIUM: SiteId = SiteId::new(0);
+const VENTRICLE: SiteId = SiteId::new(1);
+const NODE: TractId = TractId::new(0);
+
+fn interval(micros: u64) -> Interval {
+    Interval::from_span(us(micros)).unwrap_or(Interval::MAX)
+}
+
+/// The common rhythm: two sites, two cells, one tract, a VVI device, and two steps that block every fifth atrial beat.
+pub fn common_rhythm(until: u64) -> Tally {
+    let tissue = SiteParams::new(us(REFRACTORY)).with_latency(us(LINK));
+    let tau = Decay::new(us(NODE_TAU)).expect("within range");
+    let forward = Way::new(us(NODE_BASE)).with_recovery(us(NODE_GAIN), tau);
+    // Nothing goes back, and what tries leaves the node as it was.
+    let backward = Way::closed(us(NODE_BASE)).with_conceal(Fraction::ZERO);
+    let anatomy = Anatomy::new(
+        [tissue; 2],
+        [TractParams::new(ATRIUM, VENTRICLE, Fraction::ONE, forward, backward)],
+        [CellParams::new(ATRIUM, interval(SINUS)), CellParams::new(VENTRICLE, interval(ESCAPE))],
+    )
+    .expect("a sound table");
+    let lead = LeadParams {
+        atrial: None,
+        ventricular: Some(ChannelParams::at(VENTRICLE, NearField { delay: us(LINK), ..NearField::VENTRICULAR })),
+    };
+    let program = Settings::new(Mode::Vvi, interval(LOWER)).check().expect("a sound program");
+    let soon = Coupling { window: None, shift: Amount::Fixed(Deviation::from_micros(1)) };
+    let steps = [
+        Step { when: When::Every(us(BLOCKED * SINUS)), act: Act::Shut(NODE, Ways::Forward), times: u32::MAX },
+        Step {
+            when: When::After { event: Event::Block(NODE), nth: 1, coupling: soon },
+            act: Act::Open(NODE, Ways::Forward),
+            times: u32::MAX,
+        },
+    ];
+    let setup = Setup {
+        anatomy: &anatomy,
+        foci: &[],
+        lead,
+        judged: Some((program, AuditSettings::new(&program))),
+        steps: &steps,
+        start: Instant::ZERO,
+        length: us(until),
+        seed: 1,
+    };
+    let device = ReferenceDevice::new(program, Instant::ZERO);
+    let mut bench: Bench<'_, _, 2, 1, 2, 0, 2, 1> = Bench::new(&setup, Some(device)).expect("a sound setup");
+    let mut beats = Beats { site: VENTRICLE, tally: Tally::default() };
+    bench.run(Instant::MAX, &mut beats);
+    beats.tally
+}
+
+/// The plain heart alone, every record hashed: five activations a beat. Gives the beats of its ventricle and the hash.
+pub fn heart_alone(beats: u64) -> (u64, u64) {
+    let mut heart = Heart::new(&plain::ANATOMY, &[], Instant::ZERO).expect("no foci to refuse");
+    let mut hash = RecordHash::new();
+    let mut counted = 0;
+    while let Some(record) = heart.poll(Instant::MAX) {
+        hash.add(&record);
+        if record.kind == Kind::Activated && record.place == plain::APEX.row() {
+            counted += 1;
+            if counted == beats {
+                break;
+            }
+        }
+    }
+    (counted, hash.value())
+}
+
+/// What a VVI device does at a plain heart of 75 per minute.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Vvi {
+    /// It is set to 60 per minute and senses every beat.
+    Senses,
+    /// It is set to 60 per minute, and the atrium's every fifth beat is blocked by the script.
+    Mixed,
+    /// It is set to 90 per minute and paces every beat, against the sinus node.
+    Paces,
+}
+
+impl Vvi {
+    fn program(self) -> Program {
+        let rate = if self == Self::Paces { 90 } else { 60 };
+        let mut settings = Settings::new(Mode::Vvi, Interval::from_rate_nearest(Rate::per_minute(rate)));
+        settings.amplitude = MilliVolts(3_500);
+        settings.check().expect("a sound program")
+    }
+}
+
+/// The plain heart and a VVI device in a closed loop. Gives the beats of the apex and the log's hash.
+pub fn vvi_loop(kind: Vvi, beats: u64) -> (u64, u64) {
+    let program = kind.program();
+    let soon = |millis| Coupling { window: None, shift: Amount::Fixed(Deviation::from_millis(millis)) };
+    let atrial = |nth, millis| When::After { event: Event::Activation(plain::ATRIUM), nth, coupling: soon(millis) };
+    let steps = [
+        Step { when: atrial(5, 400), act: Act::Open(plain::ATRIUM_JUNCTION, Ways::Forward), times: u32::MAX },
+        Step {
+            when: When::After { event: Event::Activation(plain::ATRIUM), nth: 1, coupling: soon(500) },
+            act: Act::Shut(plain::ATRIUM_JUNCTION, Ways::Forward),
+            times: u32::MAX,
+        },
+    ];
+    let steps = if kind == Vvi::Mixed { &steps[..] } else { &[] };
+    let setup = Setup {
+        anatomy: &plain::ANATOMY,
+        foci: &[],
+        lead: LeadParams::PLAIN,
+        judged: Some((program, AuditSettings::new(&program))),
+        steps,
+        start: Instant::ZERO,
+        length: us(u64::MAX / 2),
+        seed: 1,
+    };
+    let device = ReferenceDevice::new(program, Instant::ZERO);
+    let mut bench: Bench<'_, _, 5, 4, 3, 0, 2, 16> = Bench::new(&setup, Some(device)).expect("a sound setup");
+    let mut counter = Beats { site: plain::APEX, tally: Tally::default() };
+    while counter.tally.beats < beats {
+        match bench.poll(Instant::MAX) {
+            Some(phase4::bench::Entry::Record(record)) => counter.take(&record),
+            Some(phase4::bench::Entry::Judged(_)) => {}
+            None => break,
+        }
+    }
+    (counter.tally.beats, bench.log().hash().value())
+}
