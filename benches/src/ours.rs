@@ -69,14 +69,14 @@ pub fn common_rhythm(until: u64) -> Tally {
         anatomy: &anatomy,
         foci: &[],
         lead,
-        judged: Some((program, AuditSettings::new(&program))),
+        judged: None,
         steps: &steps,
         start: Instant::ZERO,
         length: us(until),
         seed: 1,
     };
     let device = ReferenceDevice::new(program, Instant::ZERO);
-    let mut bench: Bench<'_, _, 2, 1, 2, 0, 2, 1> = Bench::new(&setup, Some(device)).expect("a sound setup");
+    let mut bench: Bench<'_, _, 2, 1, 2, 0, 2, 3> = Bench::new(&setup, Some(device)).expect("a sound setup");
     let mut beats = Beats { site: VENTRICLE, tally: Tally::default() };
     bench.run(Instant::MAX, &mut beats);
     beats.tally
@@ -120,7 +120,7 @@ impl Vvi {
 }
 
 /// The plain heart and a VVI device in a closed loop. Gives the beats of the apex and the log's hash.
-pub fn vvi_loop(kind: Vvi, beats: u64) -> (u64, u64) {
+pub fn vvi_loop(kind: Vvi, audited: bool, beats: u64) -> (u64, u64) {
     let program = kind.program();
     let soon = |millis| Coupling { window: None, shift: Amount::Fixed(Deviation::from_millis(millis)) };
     let atrial = |nth, millis| When::After { event: Event::Activation(plain::ATRIUM), nth, coupling: soon(millis) };
@@ -137,7 +137,7 @@ pub fn vvi_loop(kind: Vvi, beats: u64) -> (u64, u64) {
         anatomy: &plain::ANATOMY,
         foci: &[],
         lead: LeadParams::PLAIN,
-        judged: Some((program, AuditSettings::new(&program))),
+        judged: audited.then(|| (program, AuditSettings::new(&program))),
         steps,
         start: Instant::ZERO,
         length: us(u64::MAX / 2),

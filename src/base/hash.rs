@@ -20,10 +20,12 @@ impl RecordHash {
     }
 
     /// Takes one record in.
+    #[inline]
     pub fn add(&mut self, record: &Record) {
         self.add_words(record.to_words());
     }
 
+    #[inline]
     pub(super) fn add_words(&mut self, words: [u32; 6]) {
         for word in words {
             self.a = (self.a ^ word).rotate_left(5).wrapping_mul(0x9E37_79B1);

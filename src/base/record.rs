@@ -249,6 +249,7 @@ impl Record {
 
     /// The six little-endian words of the canonical form.
     #[allow(clippy::as_conversions, reason = "lossless, and reads the discriminant of a field-less enum")]
+    #[inline]
     pub const fn to_words(&self) -> [u32; 6] {
         let at = self.at.as_micros();
         let what =

@@ -138,39 +138,72 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
 
     /// The next entry at or before `until`; `None` when there is no more up to there.
     pub fn poll(&mut self, until: Instant) -> Option<Entry> {
-        if self.phase == Phase::Start && self.now > until {
-            return None;
-        }
-        // Every turn either yields, moves on to the next phase of this instant, or moves on to a later instant.
+        // Every turn either yields or moves on to a later instant, or to the end.
         loop {
-            let entry = match self.phase {
-                Phase::Start => self.start(),
-                Phase::Script => self.run_script(),
-                Phase::Heart => self.run_heart(),
-                Phase::Lead => self.run_lead(),
-                Phase::Device => self.run_device(),
-                Phase::Judge => self.judge(Phase::Advance),
+            if let Some(record) = self.instant() {
+                return Some(Entry::Record(record));
+            }
+            match self.phase {
+                Phase::Judge => match self.judge() {
+                    Some(judgement) => return Some(Entry::Judged(judgement)),
+                    None => self.phase = Phase::Advance,
+                },
+                Phase::Settle => match self.judge() {
+                    Some(judgement) => return Some(Entry::Judged(judgement)),
+                    None => self.phase = Phase::Over,
+                },
+                Phase::Start if self.now <= until => return Some(Entry::Record(self.start())),
+                Phase::End => return Some(Entry::Record(self.end())),
                 Phase::Advance => {
                     if !self.advance(until) {
                         return None;
                     }
-                    None
                 }
-                Phase::End => self.end(),
-                Phase::Settle => self.judge(Phase::Over),
-                Phase::Over => return None,
-            };
-            if entry.is_some() {
-                return entry;
+                _ => return None,
             }
         }
+    }
+
+    /// The next record of this instant, phase by phase in their order.
+    #[inline]
+    fn instant(&mut self) -> Option<Record> {
+        if self.phase == Phase::Script {
+            if let Some(record) = self.run_script() {
+                return Some(record);
+            }
+            self.phase = Phase::Heart;
+        }
+        if self.phase == Phase::Heart {
+            if let Some(record) = self.heart.poll(self.now) {
+                if record.kind == Kind::Activated {
+                    self.lead.activated(&record);
+                }
+                return Some(self.enter(record));
+            }
+            self.phase = Phase::Lead;
+        }
+        if self.phase == Phase::Lead {
+            if let Some(record) = self.lead.poll(self.now) {
+                return Some(self.show(record));
+            }
+            self.phase = Phase::Device;
+        }
+        if self.phase == Phase::Device {
+            if let Some(record) = self.run_device() {
+                return Some(record);
+            }
+            if self.phase == Phase::Device {
+                self.phase = Phase::Judge;
+            }
+        }
+        None
     }
 
     /// When the next entry comes, `None` when the run is over.
     pub fn next_at(&self) -> Option<Instant> {
         match self.phase {
             Phase::Over => None,
-            Phase::Advance => Some(self.next_event().map_or(self.end_at, |at| at.min(self.end_at)).max(self.now)),
+            Phase::Advance => Some(self.next_event().min(self.end_at).max(self.now)),
             _ => Some(self.now),
         }
     }
@@ -218,40 +251,44 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
     }
 
-    fn enter(&mut self, record: Record) -> Option<Entry> {
+    #[inline]
+    fn enter(&mut self, record: Record) -> Record {
         let record = self.log.take(record);
         self.script.notice(&record);
-        if let Some(auditor) = &mut self.auditor {
+        if record.kind.is_bench_visible()
+            && let Some(auditor) = &mut self.auditor
+        {
             auditor.observe(&record);
         }
-        Some(Entry::Record(record))
+        record
     }
 
-    fn start(&mut self) -> Option<Entry> {
+    fn start(&mut self) -> Record {
         self.phase = Phase::Script;
         let (low, high) = (self.seed & u64::from(u32::MAX), self.seed >> 32);
         let half = |part: u64| u32::try_from(part).unwrap_or(0);
         self.enter(Record::new(self.now, Kind::Start, 0, Cause::NONE).with_details(half(low), half(high)))
     }
 
-    fn run_script(&mut self) -> Option<Entry> {
+    #[inline]
+    fn run_script(&mut self) -> Option<Record> {
+        if !self.shows && self.script.next_at().is_none_or(|at| at > self.now) { None } else { self.next_step() }
+    }
+
+    fn next_step(&mut self) -> Option<Record> {
         // Several steps may show a signal in one instant: each goes out at once, before the next step.
         if core::mem::take(&mut self.shows)
             && let Some(record) = self.lead.poll(self.now)
         {
-            return self.show(record);
+            return Some(self.show(record));
         }
-        let Some(cued) = self.script.poll(self.now) else {
-            self.phase = Phase::Heart;
-            return None;
-        };
+        let cued = self.script.poll(self.now)?;
         // Nothing in the heart is due before now, so it takes every input.
         let taken = self.act(cued);
         debug_assert!(taken.is_ok());
         let value = u32::try_from(cued.value.rem_euclid(1 << 32)).unwrap_or(0);
-        self.enter(
-            Record::new(self.now, Kind::Step, cued.step, Cause::new(CauseKind::Script, cued.step)).with_details(cued.turn, value),
-        )
+        let cause = Cause::new(CauseKind::Script, cued.step);
+        Some(self.enter(Record::new(self.now, Kind::Step, cued.step, cause).with_details(cued.turn, value)))
     }
 
     fn act(&mut self, cued: Cued) -> Result<(), NotYet> {
@@ -280,27 +317,8 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
     }
 
-    fn run_heart(&mut self) -> Option<Entry> {
-        let Some(record) = self.heart.poll(self.now) else {
-            self.phase = Phase::Lead;
-            return None;
-        };
-        if record.kind == Kind::Activated {
-            self.lead.activated(&record);
-        }
-        self.enter(record)
-    }
-
-    fn run_lead(&mut self) -> Option<Entry> {
-        let Some(record) = self.lead.poll(self.now) else {
-            self.phase = Phase::Device;
-            return None;
-        };
-        self.show(record)
-    }
-
     /// Shows the device a signal.
-    fn show(&mut self, record: Record) -> Option<Entry> {
+    fn show(&mut self, record: Record) -> Record {
         if let (Some(device), Some((channel, signal))) = (&mut self.device, record.as_signal())
             && device.signal(channel, signal, self.now).is_err()
         {
@@ -310,16 +328,14 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         self.enter(record)
     }
 
-    fn run_device(&mut self) -> Option<Entry> {
+    #[inline]
+    fn run_device(&mut self) -> Option<Record> {
         if let Some(pulse) = self.pulse.take()
             && let Some(answer) = self.deliver(pulse)
         {
-            return self.enter(answer);
+            return Some(self.enter(answer));
         }
-        let Some((_, pulse)) = self.device.as_mut().and_then(|device| device.poll(self.now)) else {
-            self.phase = Phase::Judge;
-            return None;
-        };
+        let (_, pulse) = self.device.as_mut()?.poll(self.now)?;
         self.pulses_now = self.pulses_now.saturating_add(1);
         if self.pulses_now > MOST_PULSES_AT_ONCE {
             self.stop(EndReason::Spinning);
@@ -327,7 +343,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
         self.pulse = Some(pulse);
         // The bench's own stamp: what a device says of its instant is not evidence.
-        self.enter(Record::pulse(self.now, pulse))
+        Some(self.enter(Record::pulse(self.now, pulse)))
     }
 
     /// Brings a pulse to the tissue under its electrode; the record is that of a pulse without an answer.
@@ -339,24 +355,23 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
     }
 
-    fn judge(&mut self, then: Phase) -> Option<Entry> {
-        let judgement = self.auditor.as_mut().and_then(|auditor| auditor.poll(self.now));
-        if judgement.is_none() {
-            self.phase = then;
-        }
-        judgement.map(Entry::Judged)
+    #[inline]
+    fn judge(&mut self) -> Option<Judgement> {
+        self.auditor.as_mut()?.poll(self.now)
     }
 
-    fn next_event(&self) -> Option<Instant> {
-        [self.script.next_at(), self.heart.next_at(), self.lead.next_at(), self.device.as_ref().and_then(Device::next_at)]
-            .into_iter()
-            .flatten()
-            .min()
+    /// The next event, at the end of the time line if there is none.
+    #[inline]
+    fn next_event(&self) -> Instant {
+        let soonest = |one: Option<Instant>, other: Instant| one.map_or(other, |at| at.min(other));
+        let device = self.device.as_ref().and_then(Device::next_at);
+        let rest = soonest(self.lead.next_at(), soonest(device, Instant::MAX));
+        soonest(self.heart.next_at(), soonest(self.script.next_at(), rest))
     }
 
     /// Moves on to the next instant at or before `until`; false if there is none.
     fn advance(&mut self, until: Instant) -> bool {
-        let next = self.next_event().map_or(self.end_at, |at| at.min(self.end_at));
+        let next = self.next_event().min(self.end_at);
         if next >= self.end_at || self.ended.is_some() {
             if self.end_at > until {
                 return false;
@@ -390,7 +405,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         self.phase = Phase::End;
     }
 
-    fn end(&mut self) -> Option<Entry> {
+    fn end(&mut self) -> Record {
         self.phase = Phase::Settle;
         let reason = *self.ended.get_or_insert(EndReason::Length);
         if let Some(auditor) = &mut self.auditor {

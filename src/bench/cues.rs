@@ -2,7 +2,7 @@
 
 use super::check::check;
 use super::{Act, Amount, Coupling, Event, Step, When, WindowEnd};
-use crate::base::{CauseKind, Channel, Deviation, Instant, Kind, ParamError, Program, Record, Span, Stream, draw_below};
+use crate::base::{CauseKind, Deviation, Instant, Kind, ParamError, Program, Record, Span, Stream, draw_below, word};
 
 /// Streams of chance of the script's steps begin here: one stream a step.
 const FIRST_STREAM: u32 = 0x5C_0000;
@@ -17,7 +17,18 @@ pub struct Script<'a, const N: usize> {
     cues: [Cue; N],
     windows: Windows,
     seed: u64,
+    heard: Heard,
     next: Option<Instant>,
+}
+
+/// What any step waits for, a bit for each place: every other record is passed by.
+#[derive(Debug, Clone, Copy, Default)]
+struct Heard {
+    activated: u32,
+    blocked: u32,
+    not_captured: u32,
+    signals: u32,
+    pulses: u32,
 }
 
 /// What one step waits for.
@@ -63,7 +74,8 @@ impl<'a, const N: usize> Script<'a, N> {
     /// contradict each other, naming the step's row.
     pub fn new(steps: &'a [Step], program: Option<&Program>, seed: u64, start: Instant) -> Result<Self, ParamError> {
         check(steps, N, program.is_some())?;
-        let mut script = Self { steps, cues: [Cue::default(); N], windows: Windows::of(program), seed, next: None };
+        let mut script =
+            Self { steps, cues: [Cue::default(); N], windows: Windows::of(program), seed, heard: Heard::of(steps), next: None };
         for (step, cue) in steps.iter().zip(&mut script.cues) {
             cue.due = match step.when {
                 When::At(span) | When::Every(span) | When::Without { span, .. } => Some(start.saturating_add(span)),
@@ -100,11 +112,15 @@ impl<'a, const N: usize> Script<'a, N> {
     }
 
     /// Tells the script what happened. A step that already waits for its instant takes no notice of further events.
+    #[inline]
     pub fn notice(&mut self, record: &Record) {
-        if !can_be_waited_for(record.kind) {
-            return;
+        if self.heard.has(record) {
+            self.count(record);
         }
-        let (windows, seed) = (self.windows, self.seed);
+    }
+
+    fn count(&mut self, record: &Record) {
+        let (windows, seed) = (&self.windows, self.seed);
         let mut changed = false;
         for ((row, step), cue) in (0_u32..).zip(self.steps).zip(&mut self.cues) {
             if cue.acted >= step.times {
@@ -151,7 +167,7 @@ impl Windows {
     }
 
     /// How long after its event a step acts: at least 1 µs, so that no instant holds an endless chain.
-    fn coupled(self, coupling: Coupling, value: i64) -> Span {
+    fn coupled(&self, coupling: Coupling, value: i64) -> Span {
         let base = match coupling.window {
             None => Span::ZERO,
             Some(WindowEnd::Blanking) => self.blanking,
@@ -184,22 +200,63 @@ fn amount(amount: Amount, seed: u64, row: u32, acted: u32) -> i64 {
     }
 }
 
-const fn can_be_waited_for(kind: Kind) -> bool {
-    matches!(kind, Kind::Activated | Kind::Blocked | Kind::NotCaptured | Kind::Signal | Kind::Pulse)
+impl Heard {
+    fn of(steps: &[Step]) -> Self {
+        let mut heard = Self::default();
+        for step in steps {
+            let (When::After { event, .. } | When::Without { event, .. }) = step.when else { continue };
+            let (kind, place) = event.trace();
+            if let Some(places) = heard.places_mut(kind) {
+                *places |= bit(place);
+            }
+        }
+        heard
+    }
+
+    const fn has(&self, record: &Record) -> bool {
+        let places = match record.kind {
+            Kind::Activated => self.activated,
+            Kind::Blocked => self.blocked,
+            Kind::NotCaptured => self.not_captured,
+            Kind::Signal => self.signals,
+            Kind::Pulse => self.pulses,
+            _ => 0,
+        };
+        places & bit(record.place) != 0
+    }
+
+    const fn places_mut(&mut self, kind: Kind) -> Option<&mut u32> {
+        match kind {
+            Kind::Activated => Some(&mut self.activated),
+            Kind::Blocked => Some(&mut self.blocked),
+            Kind::NotCaptured => Some(&mut self.not_captured),
+            Kind::Signal => Some(&mut self.signals),
+            Kind::Pulse => Some(&mut self.pulses),
+            _ => None,
+        }
+    }
+}
+
+/// The bit of a place. Places that lie 32 apart share one: then [`Event::is`] tells them apart.
+const fn bit(place: u8) -> u32 {
+    1_u32.wrapping_shl(word(place))
 }
 
 impl Event {
+    /// The kind and the place of the records that tell of such an event.
+    const fn trace(self) -> (Kind, u8) {
+        match self {
+            Self::Pulse(channel) => (Kind::Pulse, channel.number()),
+            Self::Signal(channel) => (Kind::Signal, channel.number()),
+            Self::Activation(site) | Self::Capture(site) => (Kind::Activated, site.row()),
+            Self::NoCapture(site) => (Kind::NotCaptured, site.row()),
+            Self::Block(tract) => (Kind::Blocked, tract.row()),
+        }
+    }
+
     /// True if the record tells of such an event.
     pub fn is(self, record: &Record) -> bool {
-        let here = |row: u8| record.place == row;
-        let by_pulse = record.cause.kind == CauseKind::Pulse;
-        let on = |channel: Channel| record.place == channel.number();
-        match (self, record.kind) {
-            (Self::Pulse(channel), Kind::Pulse) | (Self::Signal(channel), Kind::Signal) => on(channel),
-            (Self::Activation(site), Kind::Activated) => here(site.row()),
-            (Self::Capture(site), Kind::Activated) | (Self::NoCapture(site), Kind::NotCaptured) => here(site.row()) && by_pulse,
-            (Self::Block(tract), Kind::Blocked) => here(tract.row()),
-            _ => false,
-        }
+        let by_pulse = record.cause.kind == CauseKind::Pulse || !matches!(self, Self::Capture(_) | Self::NoCapture(_));
+        self.trace() == (record.kind, record.place) && by_pulse
     }
 }

@@ -1,6 +1,6 @@
 //! The log: numbers every record, keeps the running hash, and hands on to whatever stores it.
 
-use crate::base::{Record, RecordHash};
+use crate::base::{Record, RecordHash, low_u32};
 use heapless::Deque;
 
 /// Numbers records in the order they happen and keeps their hash.
@@ -17,9 +17,9 @@ impl Log {
     }
 
     /// Takes a record in: gives it the next number (modulo 2³²) and adds it to the hash.
+    #[inline]
     pub fn take(&mut self, record: Record) -> Record {
-        let number = u32::try_from(self.count & u64::from(u32::MAX)).unwrap_or(0);
-        let record = Record { number, ..record };
+        let record = Record { number: low_u32(self.count), ..record };
         self.count = self.count.saturating_add(1);
         self.hash.add(&record);
         record

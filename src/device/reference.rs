@@ -30,7 +30,12 @@ pub struct ReferenceDevice {
     timers: Timers,
     hooks: Hooks,
     state: State,
+    /// When the device wants to be polled next, kept up to date by whatever changes `state`.
+    next: Instant,
 }
+
+/// No time: what is not due.
+const NEVER: Instant = Instant::MAX;
 
 #[derive(Debug, Clone, Copy)]
 struct State {
@@ -85,8 +90,9 @@ impl ReferenceDevice {
             emitted_at: None,
             extra_at: None,
         };
-        let mut device = Self { program, row, timers, hooks, state };
+        let mut device = Self { program, row, timers, hooks, state, next: NEVER };
         device.react(Event::Pulse, FineInstant::at(start));
+        device.refresh();
         device
     }
 
@@ -158,9 +164,13 @@ impl ReferenceDevice {
 
     /// Does the next thing due at or before `now`; true if there was one. A pulse is left in `emitted_at`.
     fn step(&mut self, now: Instant) -> bool {
-        let Some(due) = self.state.next_at().filter(|due| *due <= now) else { return false };
+        let due = self.next;
+        if due > now || due == NEVER {
+            return false;
+        }
         if self.state.extra_at == Some(due) {
             self.state.emitted_at = self.state.extra_at.take();
+            self.refresh();
             return true;
         }
         let expiry = self.state.escape_at.filter(|escape| escape.nearest() == due);
@@ -170,7 +180,13 @@ impl ReferenceDevice {
             (_, Some(expiry), _) => self.expire(expiry),
             (None, None, _) => return false,
         }
+        self.refresh();
         true
+    }
+
+    /// Finds again what is due next, after something has changed.
+    fn refresh(&mut self) {
+        self.next = self.state.soonest();
     }
 
     fn detect(&mut self, sense: Sense) {
@@ -193,21 +209,22 @@ impl ReferenceDevice {
     /// The expiry passes unnoticed, and the timer runs for another interval.
     fn lose_expiry(&mut self) {
         self.state.escape_at = self.state.escape_at.and_then(|due| before_the_end(due.plus(self.timers.lower)));
+        self.refresh();
     }
 
     /// True if a fault's span is set and `at` lies in the last such span before the expiry.
     fn is_within(&self, at: Instant, span: Option<Span>) -> bool {
-        let left = self.state.escape_at.map(|due| due.nearest().saturating_since(at));
-        span.zip(left).is_some_and(|(span, left)| left < span)
+        let (Some(span), Some(due)) = (span, self.state.escape_at) else { return false };
+        due.nearest().saturating_since(at) < span
     }
 }
 
 impl State {
     /// When the next thing is due, whatever it is.
-    fn next_at(&self) -> Option<Instant> {
-        let sense_at = self.sense.map(|sense| sense.at);
-        let escape_at = self.escape_at.map(FineInstant::nearest);
-        [self.emitted_at, self.extra_at, sense_at, escape_at].into_iter().flatten().min()
+    fn soonest(&self) -> Instant {
+        let escape_at = self.escape_at.map_or(NEVER, FineInstant::nearest);
+        let sense_at = self.sense.map_or(NEVER, |sense| sense.at);
+        escape_at.min(sense_at).min(self.extra_at.unwrap_or(NEVER)).min(self.emitted_at.unwrap_or(NEVER))
     }
 }
 
@@ -219,8 +236,8 @@ fn before_the_end(due: FineInstant) -> Option<FineInstant> {
 impl Device for ReferenceDevice {
     fn signal(&mut self, channel: Channel, signal: Signal, at: Instant) -> Result<(), NotYet> {
         let at = at.max(self.state.seen);
-        if let Some(due) = self.next_at().filter(|due| *due < at) {
-            return Err(NotYet(due));
+        if self.next < at {
+            return Err(NotYet(self.next));
         }
         self.state.seen = at;
         if self.is_within(at, self.hooks.loses_expiry_within) {
@@ -238,21 +255,31 @@ impl Device for ReferenceDevice {
         let sense = self.sense_of(signal, at);
         if self.state.sense.is_none() && !self.row.on(self.classify(sense)).is_none() {
             self.state.sense = Some(sense);
+            self.next = self.next.min(sense.at);
         }
         Ok(())
     }
 
+    #[inline]
     fn poll(&mut self, now: Instant) -> Option<(Instant, Pulse)> {
-        let now = now.max(self.state.seen);
-        self.state.seen = now;
+        self.state.seen = self.state.seen.max(now);
+        if self.next > self.state.seen { None } else { self.fetch(self.state.seen) }
+    }
+
+    #[inline]
+    fn next_at(&self) -> Option<Instant> {
+        if self.next == NEVER { None } else { Some(self.next) }
+    }
+}
+
+impl ReferenceDevice {
+    /// The next pulse due at or before `now`.
+    fn fetch(&mut self, now: Instant) -> Option<(Instant, Pulse)> {
         // At most a sense, then an expiry.
         while self.state.emitted_at.is_none() && self.step(now) {}
         let at = self.state.emitted_at.take()?;
+        self.refresh();
         let settings = self.program.settings();
         Some((at, Pulse { channel: self.row.paces?, amplitude: settings.amplitude, width: settings.width }))
-    }
-
-    fn next_at(&self) -> Option<Instant> {
-        self.state.next_at()
     }
 }

@@ -14,17 +14,33 @@ use crate::base::{Cause, Channel, Instant, Kind, MicroVolts, NotYet, ParamError,
 /// Signals with the same onset come out in a fixed order: those of the script before those of the heart, atrial before ventricular.
 #[derive(Debug, Clone)]
 pub struct Lead {
-    channels: [Line; 2],
+    /// Atrial, ventricular.
+    channels: [Option<ChannelParams>; 2],
+    /// When the next signal comes: the least of `due`.
+    next: Instant,
+    /// When the signal in each slot comes, in the order in which equal onsets come out.
+    due: [Instant; 4],
+    slots: [Record; 4],
     overtaken: u32,
 }
 
-/// One channel: its parameters, and a slot for each of its two sources.
+/// What a slot waits for that is empty.
+const NEVER: Instant = Instant::MAX;
+
+/// A signal on its way has a slot for each of the two channels and the two sources.
 #[derive(Debug, Clone, Copy)]
-struct Line {
-    channel: Channel,
-    params: Option<ChannelParams>,
-    from_script: Option<Record>,
-    from_heart: Option<Record>,
+enum Source {
+    Script,
+    Heart,
+}
+
+const fn slot(channel: Channel, source: Source) -> usize {
+    match (source, channel) {
+        (Source::Script, Channel::Atrial) => 0,
+        (Source::Script, Channel::Ventricular) => 1,
+        (Source::Heart, Channel::Atrial) => 2,
+        (Source::Heart, Channel::Ventricular) => 3,
+    }
 }
 
 impl Lead {
@@ -33,15 +49,15 @@ impl Lead {
     /// # Errors
     /// Names the first parameter out of range; its row is the channel: 0 atrial, 1 ventricular.
     pub const fn new(params: &LeadParams) -> Result<Self, ParamError> {
-        let atrial = match Line::new(Channel::Atrial, params.atrial) {
-            Ok(line) => line,
-            Err(refused) => return Err(refused),
-        };
-        let ventricular = match Line::new(Channel::Ventricular, params.ventricular) {
-            Ok(line) => line,
-            Err(refused) => return Err(refused),
-        };
-        Ok(Self { channels: [atrial, ventricular], overtaken: 0 })
+        if let Err(refused) = check(Channel::Atrial, &params.atrial) {
+            return Err(refused);
+        }
+        if let Err(refused) = check(Channel::Ventricular, &params.ventricular) {
+            return Err(refused);
+        }
+        let empty = Record::new(NEVER, Kind::Signal, 0, Cause::NONE);
+        let channels = [params.atrial, params.ventricular];
+        Ok(Self { channels, next: NEVER, due: [NEVER; 4], slots: [empty; 4], overtaken: 0 })
     }
 
     /// Takes note of an activation ([`Kind::Activated`]); any other record is ignored. Each channel that senses at its site
@@ -51,13 +67,12 @@ impl Lead {
             return;
         }
         let site = SiteId::new(record.place);
-        for line in &mut self.channels {
-            let Some(ChannelParams { sense, near, .. }) = line.params else { continue };
+        for (channel, params) in Channel::ALL.into_iter().zip(self.channels) {
+            let Some(ChannelParams { sense, near: NearField { peak, delay, width }, .. }) = params else { continue };
             if sense == site {
-                let NearField { peak, delay, width } = near;
                 let onset = record.at.saturating_add(delay);
-                let shown = Record::signal(onset, line.channel, Signal { peak, width }, record.cause);
-                if line.from_heart.replace(shown).is_some() {
+                let shown = Record::signal(onset, channel, Signal { peak, width }, record.cause);
+                if self.put(slot(channel, Source::Heart), shown) {
                     self.overtaken = self.overtaken.saturating_add(1);
                 }
             }
@@ -70,19 +85,24 @@ impl Lead {
     /// # Errors
     /// [`NotYet`] if an earlier signal of the script has not been fetched from this channel: poll up to its onset first, then
     /// offer this one again. Nothing has changed then.
-    pub const fn show(&mut self, channel: Channel, signal: Signal, at: Instant, cause: Cause) -> Result<(), NotYet> {
-        let line = self.line_mut(channel);
-        if let Some(waiting) = line.from_script {
-            return Err(NotYet(waiting.at));
+    pub fn show(&mut self, channel: Channel, signal: Signal, at: Instant, cause: Cause) -> Result<(), NotYet> {
+        let slot = slot(channel, Source::Script);
+        if let Some(&waiting) = self.due.get(slot).filter(|&&due| due != NEVER) {
+            return Err(NotYet(waiting));
         }
-        line.from_script = Some(Record::signal(at, channel, signal, cause));
+        self.put(slot, Record::signal(at, channel, signal, cause));
         Ok(())
     }
 
     /// Changes what a channel makes of the activations to come; what is on its way stays as it was. A channel that is not
     /// connected has nothing to change. Values beyond the ranges of [`NearField`] are cut to them.
     pub fn change(&mut self, channel: Channel, change: LeadChange) {
-        let Some(ChannelParams { near, .. }) = &mut self.line_mut(channel).params else { return };
+        let [atrial, ventricular] = &mut self.channels;
+        let params = match channel {
+            Channel::Atrial => atrial,
+            Channel::Ventricular => ventricular,
+        };
+        let Some(ChannelParams { near, .. }) = params else { return };
         let within = |span: Span, longest: Span| span.max(NearField::SHORTEST).min(longest);
         match change {
             LeadChange::Peak(peak) => near.peak = MicroVolts(peak.0.min(NearField::HIGHEST_PEAK.0)),
@@ -93,7 +113,12 @@ impl Lead {
 
     /// The site that this channel's pulses reach, `None` if it is not connected.
     pub const fn pace_site(&self, channel: Channel) -> Option<SiteId> {
-        match self.line(channel).params {
+        let [atrial, ventricular] = &self.channels;
+        let params = match channel {
+            Channel::Atrial => atrial,
+            Channel::Ventricular => ventricular,
+        };
+        match params {
             Some(params) => Some(params.pace),
             None => None,
         }
@@ -106,52 +131,44 @@ impl Lead {
     }
 
     /// The onset of the next signal, `None` if none is on its way.
+    #[inline]
     pub fn next_at(&self) -> Option<Instant> {
-        self.slots().flatten().map(|record| record.at).min()
+        if self.next == NEVER { None } else { Some(self.next) }
     }
 
     /// The next signal with its onset at or before `now`; `None` when there is no more.
+    #[inline]
     pub fn poll(&mut self, now: Instant) -> Option<Record> {
-        let due = self.next_at().filter(|at| *at <= now)?;
-        self.slots_mut().find(|slot| slot.is_some_and(|record| record.at == due))?.take()
+        if self.next > now || self.next == NEVER { None } else { self.take() }
     }
 
-    /// Every slot, in the order in which equal onsets come out.
-    fn slots(&self) -> impl Iterator<Item = &Option<Record>> {
-        let script = self.channels.iter().map(|line| &line.from_script);
-        script.chain(self.channels.iter().map(|line| &line.from_heart))
+    /// Takes out the signal that comes next.
+    fn take(&mut self) -> Option<Record> {
+        let mut slots = self.due.iter_mut().zip(&self.slots);
+        let record = slots.find(|(due, _)| **due == self.next).map(|(due, record)| {
+            *due = NEVER;
+            *record
+        });
+        self.next = self.due.iter().fold(NEVER, |least, &due| least.min(due));
+        record
     }
 
-    fn slots_mut(&mut self) -> impl Iterator<Item = &mut Option<Record>> {
-        let [atrial, ventricular] = &mut self.channels;
-        let script = [&mut atrial.from_script, &mut ventricular.from_script];
-        script.into_iter().chain([&mut atrial.from_heart, &mut ventricular.from_heart])
-    }
-
-    const fn line(&self, channel: Channel) -> &Line {
-        let [atrial, ventricular] = &self.channels;
-        match channel {
-            Channel::Atrial => atrial,
-            Channel::Ventricular => ventricular,
-        }
-    }
-
-    const fn line_mut(&mut self, channel: Channel) -> &mut Line {
-        let [atrial, ventricular] = &mut self.channels;
-        match channel {
-            Channel::Atrial => atrial,
-            Channel::Ventricular => ventricular,
-        }
+    /// Puts a signal into a slot; true if one that was still in it is lost.
+    fn put(&mut self, slot: usize, record: Record) -> bool {
+        let (Some(due), Some(place)) = (self.due.get_mut(slot), self.slots.get_mut(slot)) else { return false };
+        let overtakes = *due != NEVER;
+        *due = record.at;
+        *place = record;
+        self.next = if overtakes { self.due.iter().fold(NEVER, |least, &due| least.min(due)) } else { self.next.min(record.at) };
+        overtakes
     }
 }
 
-impl Line {
-    const fn new(channel: Channel, params: Option<ChannelParams>) -> Result<Self, ParamError> {
-        if let Some(ChannelParams { near, .. }) = &params
-            && let Err(refused) = near.check()
-        {
-            return Err(refused.in_row(channel.number()));
-        }
-        Ok(Self { channel, params, from_script: None, from_heart: None })
+const fn check(channel: Channel, params: &Option<ChannelParams>) -> Result<(), ParamError> {
+    if let Some(ChannelParams { near, .. }) = params
+        && let Err(refused) = near.check()
+    {
+        return Err(refused.in_row(channel.number()));
     }
+    Ok(())
 }

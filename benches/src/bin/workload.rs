@@ -15,9 +15,12 @@ fn main() {
     let counted = match name.as_str() {
         "common" => pair(ours::common_rhythm(length(beats))),
         "heart" => ours::heart_alone(beats),
-        "vvi-senses" => ours::vvi_loop(Vvi::Senses, beats),
-        "vvi-mixed" => ours::vvi_loop(Vvi::Mixed, beats),
-        "vvi-paces" => ours::vvi_loop(Vvi::Paces, beats),
+        "vvi-senses" => ours::vvi_loop(Vvi::Senses, false, beats),
+        "vvi-senses-audited" => ours::vvi_loop(Vvi::Senses, true, beats),
+        "vvi-mixed" => ours::vvi_loop(Vvi::Mixed, false, beats),
+        "vvi-mixed-audited" => ours::vvi_loop(Vvi::Mixed, true, beats),
+        "vvi-paces" => ours::vvi_loop(Vvi::Paces, false, beats),
+        "vvi-paces-audited" => ours::vvi_loop(Vvi::Paces, true, beats),
         "special-integer" => {
             special::integer_table(length(beats), |at| tally.beat(at));
             pair(tally)
