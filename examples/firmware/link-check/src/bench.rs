@@ -1,6 +1,7 @@
-use phase4::base::{Instant, Record};
-use phase4::bench::{self, Event, Log, Sink};
-use phase4::device::{Device, ReferenceDevice};
+use phase4::audit::AuditSettings;
+use phase4::base::{Instant, Program, Record};
+use phase4::bench::{self, Event, Log, Sink, canary};
+use phase4::device::{Device, Fault, ReferenceDevice};
 
 /// The plain anatomy, a focus of each kind, sixteen steps, as many hypotheses as a target keeps.
 type Bench = bench::Bench<'static, ReferenceDevice, 5, 4, 3, 2, 16, 12>;
@@ -32,6 +33,17 @@ crate::entries! { BENCH:
     Foreign::new as fn(_, _);
     Foreign::poll as fn(_, _);
     Foreign::next_at as fn(_);
+}
+
+fn last_visible(program: &Program, settings: &AuditSettings) -> Option<Fault> {
+    canary::visible(program, settings).last()
+}
+
+crate::entries! { CANARY:
+    last_visible as fn(_, _);
+    canary::draw_fault as fn(_, _, _);
+    canary::run::<12> as fn(_, _, _, _);
+    canary::control::<12> as fn(_, _, _);
 }
 
 crate::entries! { SCRIPT:
