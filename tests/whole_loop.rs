@@ -1,4 +1,12 @@
 //! Properties of the whole loop: heart, lead, device, auditor and script together.
+#![allow(
+    clippy::arithmetic_side_effects,
+    clippy::indexing_slicing,
+    clippy::missing_const_for_fn,
+    clippy::float_arithmetic,
+    clippy::expect_used,
+    reason = "a test may panic"
+)]
 
 #[path = "whole_loop/bytes.rs"]
 mod bytes;
