@@ -1,12 +1,13 @@
-//! Puts together everything a run has to tell.
+//! Puts together everything a run has to tell, its verdict first.
 
-use crate::judge::Judged;
+use crate::judge::{self, Circumstances, Judged, canary, coverage_table, is_judged};
+use crate::output::INTERRUPTED;
 use crate::run::{names, tract_shapes};
-use crate::run_data::{Canary, Coverage, RunData, Verdict};
+use crate::run_data::{RunData, Verdict};
 use crate::scenario::{Scenario, describe_fault};
 use crate::tally::Tally;
-use phase4::audit::RULE_SET;
-use phase4::base::Record;
+use phase4::audit::{RULE_SET, RuleSet};
+use phase4::base::{ParamError, Record};
 
 /// The version of this program.
 pub const VERSION: &str = env!("CARGO_PKG_VERSION");
@@ -16,34 +17,46 @@ pub const VERSION: &str = env!("CARGO_PKG_VERSION");
 pub struct Outcome {
     /// The command that gives it again.
     pub command: String,
-    /// The verdict.
-    pub verdict: Verdict,
     /// Counts over the records.
     pub tally: Tally,
     /// The hash over the records.
     pub hash: u64,
     /// The records, if they were kept.
     pub records: Vec<Record>,
-    /// What the auditor made of it.
+    /// What the auditor made of it; `None` where there was no device.
     pub judged: Option<Judged>,
-    /// What was covered.
-    pub coverage: Option<Coverage>,
-    /// The planted fault.
-    pub canary: Option<Canary>,
 }
 
-/// Everything a run of this scenario has to tell.
-pub fn run_data(scenario: &Scenario, outcome: Outcome) -> RunData {
+/// Everything a run of this scenario has to tell. The canary is planted here; its judge is blind to the same rules as the run's.
+///
+/// # Errors
+/// What the auditor refuses in its settings.
+pub fn run_data(scenario: &Scenario, outcome: Outcome, blind: RuleSet) -> Result<RunData, ParamError> {
     let device = scenario.device.as_ref();
+    let tally = outcome.tally;
+    let mut canary = None;
+    let mut verdict = Verdict::Unjudged;
+    if let (Some(judged), Some(device), Some(audit)) = (&outcome.judged, device, &scenario.audit) {
+        canary = self::canary(&device.program, &audit.settings, tally.seed, blind)?;
+        let circumstances = Circumstances {
+            canary_caught: canary.as_ref().is_none_or(|canary| canary.caught),
+            required_missing: audit
+                .require
+                .iter()
+                .any(|cell| !judged.coverage.as_ref().is_some_and(|coverage| cell.is_hit(coverage))),
+            interrupted: tally.end_reason == INTERRUPTED,
+        };
+        verdict = judge::verdict(judged, &device.program, audit.settings.decide_thousandths, circumstances);
+    }
     let judged = outcome.judged.unwrap_or_default();
-    RunData {
+    Ok(RunData {
         name: scenario.name.clone(),
         note: scenario.note.clone(),
         bench: scenario.bench.clone(),
         scenario_text: scenario.source.text().to_owned(),
         scenario_file: scenario.source.name().to_owned(),
         command: outcome.command,
-        verdict: outcome.verdict,
+        verdict,
         program: device.map(|device| device.program),
         device_name: device.map(|device| device.name.clone()),
         fault: device.and_then(|device| device.fault).map(describe_fault),
@@ -54,17 +67,23 @@ pub fn run_data(scenario: &Scenario, outcome: Outcome) -> RunData {
         scores: judged.scores,
         decided: judged.decided,
         undecided: judged.undecided,
-        coverage: outcome.coverage,
-        canary: outcome.canary,
+        coverage: judged
+            .coverage
+            .as_ref()
+            .filter(|_| device.is_some_and(|device| is_judged(&device.program)))
+            .map(coverage_table),
+        canary,
         steps: scenario.steps.texts.clone(),
         names: names(scenario),
         tracts: tract_shapes(scenario),
-        seed: outcome.tally.seed,
+        beats: tally.beats,
+        pulses: tally.pulses,
+        seed: tally.seed,
         hash: outcome.hash,
         rule_set: RULE_SET,
         version: VERSION,
-        start: outcome.tally.start(),
-        simulated: outcome.tally.simulated(),
-        end_reason: outcome.tally.end_reason,
-    }
+        start: tally.start(),
+        simulated: tally.simulated(),
+        end_reason: tally.end_reason,
+    })
 }

@@ -52,6 +52,10 @@ pub struct RunData {
     pub names: Names,
     /// What a drawing needs of each tract, by its row.
     pub tracts: Vec<TractShape>,
+    /// Ventricular activations.
+    pub beats: u64,
+    /// Pulses of the device.
+    pub pulses: u64,
     /// The seed.
     pub seed: u64,
     /// The running hash over all records.
@@ -142,6 +146,8 @@ pub struct Coverage {
 /// A row of the coverage table.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct CoverageRow {
+    /// Its short name, `VS/alert`; with a slash and a column's name that of a cell.
+    pub code: String,
     /// What the window counts from, in words.
     pub anchor: String,
     /// The window's name.

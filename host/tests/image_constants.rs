@@ -3,6 +3,7 @@
 //! The texts beside this file are written by
 //! `cargo run -p phase4-host --example image_constants -- examples/scenarios/NAME.toml > host/tests/image/NAME.rs`.
 
+use phase4::audit::RuleSet;
 use phase4::base::Instant;
 use phase4::bench::Bench;
 use phase4_host::image::constants;
@@ -11,6 +12,10 @@ use phase4_host::run;
 use phase4_host::scenario::Scenario;
 use std::path::Path;
 use std::sync::atomic::AtomicBool;
+
+const fn order(seed: u64, stop: &AtomicBool) -> run::Order<'_> {
+    run::Order { seed, blind: RuleSet::EMPTY, stop, keep: false }
+}
 
 macro_rules! images {
     ($($name:ident $file:literal;)*) => {
@@ -35,7 +40,7 @@ macro_rules! images {
                 )
                 .unwrap();
             while bench.poll(Instant::MAX).is_some() {}
-            let on_host = run::run(&scenario, scenario.seed, &AtomicBool::new(false), |_| Ok(()), |_| ()).unwrap();
+            let on_host = run::run(&scenario, order(scenario.seed, &AtomicBool::new(false)), |_| Ok(()), |_| ()).unwrap();
             assert_eq!(bench.log().hash().value(), on_host.hash);
             assert_eq!(bench.auditor().map(|auditor| auditor.broken()), on_host.judged.map(|judged| judged.broken));
         })*

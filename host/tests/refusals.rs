@@ -5,11 +5,9 @@ use phase4_host::scenario::Scenario;
 use std::path::Path;
 
 fn refused(text: &str) -> String {
-    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/data");
-    match Scenario::parse(Source::new("scenario.toml", text), &folder) {
+    match Scenario::parse(Source::new("scenario.toml", text), Path::new("tests/data")) {
         Ok(_) => panic!("accepted:\n{text}"),
-        // Paths of the machine that runs the test are no part of the message.
-        Err(refusal) => refusal.render(false).replace(&folder.display().to_string(), "<folder>"),
+        Err(refusal) => refusal.render(false),
     }
 }
 
@@ -182,4 +180,14 @@ told! {
     a_window_that_ends_before_it_begins: audit("vulnerable = \"400..150 ms\"");
     an_uncertainty_beyond_reason: audit("uncertainty = \"1 s\"");
     a_sensitivity_without_bounds: audit("tolerance.sensitivity = \"95 %\"");
+}
+
+told! {
+    a_cell_that_is_none: audit("require = [\"VS/alert/PVX\"]");
+    a_cell_of_no_sort: audit("require = [\"everything\"]");
+    a_cell_without_stimulus: audit("require = [\"VS/alert/noise\"]");
+    a_cell_that_nothing_hits: audit("require = [\"VS/blanking/sub\"]");
+    a_cell_of_another_program: audit("require = [\"VS/hysteresis/R\"]");
+    a_cell_too_narrow: audit("tolerance = \"60 ms\"\nrequire = [\"VS/blanking/empty\"]");
+    a_list_that_is_none: audit("require = \"VS/alert/PVC\"");
 }

@@ -267,7 +267,7 @@ impl Tolerance {
 
 impl AuditSettings {
     /// The highest peak that must not be seen and the lowest that must.
-    pub(super) fn sensitivity_limits(&self, set: MicroVolts) -> (MicroVolts, MicroVolts) {
+    pub fn sensitivity_limits(&self, set: MicroVolts) -> (MicroVolts, MicroVolts) {
         let share = |thousandths: u32| u64::from(set.0).saturating_mul(u64::from(thousandths));
         let low = share(1_000_u32.saturating_sub(self.sensitivity_thousandths)).checked_div(1_000).unwrap_or(0);
         let high = share(1_000_u32.saturating_add(self.sensitivity_thousandths)).div_ceil(1_000);

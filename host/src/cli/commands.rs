@@ -3,14 +3,15 @@
 use super::args::{Judge, Run};
 use super::progress::Progress;
 use crate::assemble::{Outcome, run_data};
-use crate::judge::{self, Circumstances, Judged};
+use crate::judge;
 use crate::log_file::{self, Usual};
 use crate::output::{Folder, Summary, sentence};
 use crate::refusal::{Complaint, Refusal};
-use crate::run::{self, Failed, names};
-use crate::run_data::{Canary, Coverage, RunData, Verdict};
-use crate::scenario::{DevicePart, Scenario};
+use crate::run::{self, Failed, Finished, Order, names};
+use crate::run_data::{RunData, Verdict};
+use crate::scenario::Scenario;
 use crate::tally::{Tally, number};
+use phase4::audit::RuleSet;
 use std::path::Path;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -29,16 +30,16 @@ fn refuse(message: impl ToString) -> Refusal {
 /// `phase4 run`
 pub(super) fn run(args: &Run) -> Result<Answer, Refusal> {
     let scenario = Scenario::load(&args.file)?;
-    let seed = args.seed.unwrap_or(scenario.seed);
-    let mut folder = args.out.as_deref().map(Folder::begin).transpose().map_err(refuse)?;
     let stop = stop_on_interrupt();
+    let mut folder = args.out.as_deref().map(Folder::begin).transpose().map_err(refuse)?;
     let progress = Progress::new(scenario.start, scenario.length);
     let names = names(&scenario);
     let mut records = Vec::new();
+    let seed = args.seed.unwrap_or(scenario.seed);
+    let order = Order { seed, blind: RuleSet::EMPTY, stop: &stop, keep: folder.is_some() };
     let finished = run::run(
         &scenario,
-        seed,
-        &stop,
+        order,
         |record| match &mut folder {
             Some(folder) => {
                 records.push(*record);
@@ -54,63 +55,33 @@ pub(super) fn run(args: &Run) -> Result<Answer, Refusal> {
         Failed::Output(error) => refuse(format!("the log cannot be written: {error}")),
     })?;
     let command = command(&["run".to_owned(), quote(&args.file)], args.seed);
-    let (tally, hash) = (finished.tally, finished.hash);
-    let told = tell(&scenario, Told { command, tally, hash, records, judged: finished.judged });
-    let summary = Summary::of(&told, tally.beats, tally.pulses).to_json();
+    let Finished { tally, hash, judged } = finished;
+    let told = run_data(&scenario, Outcome { command, tally, hash, records, judged }, RuleSet::EMPTY).map_err(refuse)?;
+    let summary = Summary::of(&told).to_json();
     if let Some(folder) = folder {
         folder.put_in_place(&summary).map_err(refuse)?;
     }
-    Ok(answer(&told, &tally, summary, args.json))
+    Ok(answer(&told, summary, args.json))
 }
 
 /// `phase4 judge`
 pub(super) fn judge(args: &Judge) -> Result<Answer, Refusal> {
     let scenario = Scenario::load(&args.program)?;
-    let judged_by = scenario.device.as_ref().zip(scenario.audit.as_ref());
-    let usual = judged_by.map(|(device, _)| Usual::of(&device.program)).unwrap_or_default();
+    let usual = scenario.device.as_ref().map(|device| Usual::of(&device.program)).unwrap_or_default();
     let mut log = log_file::read(&args.log, &names(&scenario), usual)?;
     let hash = number(&mut log.records);
     let mut tally = Tally::default();
     log.records.iter().for_each(|record| tally.take(record));
-    let judged = match judged_by {
-        Some((device, audit)) => Some(judge::judge(&log, &device.program, audit).map_err(refuse)?),
-        None => None,
-    };
+    let judged = judge::judge(&log, &scenario).map_err(refuse)?;
     let command = command(&["judge".to_owned(), quote(&args.log), "--program".to_owned(), quote(&args.program)], None);
-    let told = tell(&scenario, Told { command, tally, hash, records: log.records, judged });
-    let summary = Summary::of(&told, tally.beats, tally.pulses).to_json();
-    Ok(answer(&told, &tally, summary, args.json))
+    let outcome = Outcome { command, tally, hash, records: log.records, judged };
+    let told = run_data(&scenario, outcome, RuleSet::EMPTY).map_err(refuse)?;
+    let summary = Summary::of(&told).to_json();
+    Ok(answer(&told, summary, args.json))
 }
 
-/// What is known before the verdict.
-struct Told {
-    command: String,
-    tally: Tally,
-    hash: u64,
-    records: Vec<phase4::base::Record>,
-    judged: Option<Judged>,
-}
-
-fn tell(scenario: &Scenario, told: Told) -> RunData {
-    let coverage: Option<Coverage> = None;
-    let canary: Option<Canary> = None;
-    let circumstances = Circumstances {
-        canary_caught: canary.as_ref().is_none_or(|canary| canary.caught),
-        required_missing: false,
-        interrupted: told.tally.end_reason == crate::output::INTERRUPTED,
-    };
-    let verdict = match (&told.judged, &scenario.device, &scenario.audit) {
-        (Some(judged), Some(DevicePart { program, .. }), Some(audit)) => {
-            judge::verdict(judged, program, audit.settings.decide_thousandths, circumstances)
-        }
-        _ => Verdict::Unjudged,
-    };
-    let Told { command, tally, hash, records, judged } = told;
-    run_data(scenario, Outcome { command, verdict, tally, hash, records, judged, coverage, canary })
-}
-
-fn answer(told: &RunData, tally: &Tally, summary: String, json: bool) -> Answer {
-    let text = if json { summary } else { format!("{}\n", sentence(told, tally.beats, tally.pulses)) };
+fn answer(told: &RunData, summary: String, json: bool) -> Answer {
+    let text = if json { summary } else { format!("{}\n", sentence(told)) };
     Answer { text, verdict: told.verdict }
 }
 

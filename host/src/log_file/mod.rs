@@ -8,5 +8,5 @@ mod words;
 mod write;
 
 pub use line::{COLUMNS, Line};
-pub use read::{LogFile, Usual, read};
+pub use read::{LogFile, Usual, parse, read};
 pub use write::{CsvLog, JsonLog};

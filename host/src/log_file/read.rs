@@ -44,9 +44,18 @@ pub struct LogFile {
 /// comes after the end.
 pub fn read(path: &Path, names: &Names, usual: Usual) -> Result<LogFile, Refusal> {
     let name = path.display().to_string();
-    let cannot = |error: &io::Error| Refusal::plain(Complaint::new(format!("cannot read {name}: {error}")));
-    let file = File::open(path).map_err(|error| cannot(&error))?;
-    let mut lines = Lines { from: BufReader::new(file), name: &name, number: 0 };
+    match File::open(path) {
+        Ok(file) => parse(BufReader::new(file), &name, names, usual),
+        Err(error) => Err(Refusal::plain(Complaint::new(format!("cannot read {name}: {error}")))),
+    }
+}
+
+/// Reads a log from an open file of this name.
+///
+/// # Errors
+/// As [`read`].
+pub fn parse(from: impl BufRead, name: &str, names: &Names, usual: Usual) -> Result<LogFile, Refusal> {
+    let mut lines = Lines { from, name, number: 0 };
     let mut log = Reader { file: LogFile { records: Vec::new(), has_start: false, has_end: false }, names, usual };
     let Some(first) = lines.next_line()? else {
         return Err(Refusal::plain(Complaint::new(format!("{name} is empty: a log has at least one record"))));
@@ -129,7 +138,8 @@ impl Reader<'_> {
     fn take_json(&mut self, text: &str) -> Result<(), WrongLine> {
         let line: Line<'_> = serde_json::from_str(text).map_err(|error| {
             let message = error.to_string();
-            let message = message.split(" at line ").next().unwrap_or_default().to_owned();
+            let message =
+                message.split(" at line ").next().unwrap_or_default().replace("expected u64", "expected a whole number");
             WrongLine { message: format!("not a record as JSON: {message}"), column: error.column().checked_sub(1) }
         })?;
         self.take(&line)

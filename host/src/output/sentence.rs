@@ -1,12 +1,17 @@
 //! The verdict as one line that a person reads on a terminal.
 
 use crate::run_data::{RunData, Verdict};
+use crate::scenario::UNNAMED;
 use crate::scenario::units::show_micros;
 use phase4::audit::{RuleId, Score};
 
 /// The verdict in a word and a sentence, without a line end.
-pub fn sentence(run: &RunData, beats: u64, pulses: u64) -> String {
-    let device = run.device_name.as_deref().unwrap_or("the device");
+pub fn sentence(run: &RunData) -> String {
+    let (beats, pulses) = (run.beats, run.pulses);
+    let device = match run.device_name.as_deref() {
+        None | Some(UNNAMED) => format!("The {UNNAMED}"),
+        Some(name) => name.to_owned(),
+    };
     let length = show_length(run.simulated.as_micros());
     match run.verdict {
         Verdict::Holds => {
@@ -22,7 +27,7 @@ pub fn sentence(run: &RunData, beats: u64, pulses: u64) -> String {
                 count(pulses, "pulse")
             )
         }
-        Verdict::Broken => broken(run, device),
+        Verdict::Broken => broken(run, &device),
         Verdict::Undecided => undecided(run),
         Verdict::Void => match &run.canary {
             Some(canary) => {

@@ -1,6 +1,6 @@
 //! `summary.json`: a run for a machine to read.
 
-use crate::run_data::{CoverageState, Need, RunData};
+use crate::run_data::{Coverage, CoverageState, Need, RunData};
 use phase4::audit::{RuleId, Score};
 use serde::Serialize;
 
@@ -89,26 +89,44 @@ pub struct Covered<'a> {
     /// Required cells that can be hit under this program.
     pub required: u32,
     /// Every cell that is required or was hit.
-    pub cells: Vec<Cell<'a>>,
+    pub cells: Vec<Cell>,
+    /// Cells of the run as a whole.
+    pub whole_run: Vec<WholeRun<'a>>,
+    /// Edges of windows that were tried from both sides, and those that can be.
+    pub edges: Edges,
 }
 
 /// A coverage cell.
 #[derive(Debug, Clone, Serialize)]
-pub struct Cell<'a> {
-    /// What the window counts from.
-    pub anchor: &'a str,
-    /// The window.
-    pub window: &'a str,
-    /// The stimulus.
-    pub stimulus: &'a str,
+pub struct Cell {
+    /// Its name, `VS/alert/PVC`: as it is written in `[audit] require`.
+    pub cell: String,
     /// `hit`, `band only`, `empty`, `void` or `no stimulus`.
     pub state: &'static str,
     /// Whether it counts.
     pub required: bool,
     /// Hits well inside the window.
     pub core: u32,
-    /// Hits too near an end to prove anything.
+    /// Hits that prove nothing: too near an end, or undecided.
     pub band: u32,
+}
+
+/// A coverage cell of the run as a whole.
+#[derive(Debug, Clone, Serialize)]
+pub struct WholeRun<'a> {
+    /// Its name.
+    pub cell: &'a str,
+    /// How often it was hit.
+    pub hits: u32,
+}
+
+/// Edges of windows.
+#[derive(Debug, Clone, Copy, Serialize)]
+pub struct Edges {
+    /// Tried from both sides.
+    pub hit: u32,
+    /// All that can be.
+    pub required: u32,
 }
 
 /// The planted fault.
@@ -129,11 +147,11 @@ const CAUTION: &str = "bench only: never connect to a person; not a medical devi
 
 impl<'a> Summary<'a> {
     /// A run in short.
-    pub fn of(run: &'a RunData, beats: u64, pulses: u64) -> Self {
+    pub fn of(run: &'a RunData) -> Self {
         Self {
             verdict: run.verdict.word(),
-            beats,
-            pulses,
+            beats: run.beats,
+            pulses: run.pulses,
             simulated_us: run.simulated.as_micros(),
             hash: format!("{:016x}", run.hash),
             seed: run.seed,
@@ -169,20 +187,29 @@ impl<'a> Summary<'a> {
 }
 
 impl<'a> Covered<'a> {
-    fn of(coverage: &'a crate::run_data::Coverage) -> Self {
+    fn of(coverage: &'a Coverage) -> Self {
         let cells = coverage.rows.iter().flat_map(|row| {
-            let shown = |(cell, _): &(&crate::run_data::CoverageCell, &String)| cell.need == Need::Required || cell.core > 0;
-            row.cells.iter().zip(&coverage.columns).filter(shown).map(|(cell, column)| Cell {
-                anchor: &row.anchor,
-                window: &row.window,
-                stimulus: column,
+            let named = row.cells.iter().zip(&coverage.columns);
+            named.filter(|(cell, _)| cell.need == Need::Required || cell.core > 0).map(|(cell, column)| Cell {
+                cell: format!("{}/{column}", row.code),
                 state: state(cell.state),
                 required: cell.need == Need::Required,
                 core: cell.core,
                 band: cell.band,
             })
         });
-        Self { hit: coverage.hit, required: coverage.required, cells: cells.collect() }
+        let count = |edges: usize| u32::try_from(edges).unwrap_or(u32::MAX);
+        let possible = coverage.edges.iter().filter(|edge| !edge.void);
+        Self {
+            hit: coverage.hit,
+            required: coverage.required,
+            cells: cells.collect(),
+            whole_run: coverage.whole_run.iter().map(|(cell, hits)| WholeRun { cell, hits: *hits }).collect(),
+            edges: Edges {
+                hit: count(possible.clone().filter(|edge| edge.before > 0 && edge.after > 0).count()),
+                required: count(possible.count()),
+            },
+        }
     }
 }
 

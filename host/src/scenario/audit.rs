@@ -2,21 +2,21 @@
 
 use super::device::set;
 use super::param::{Written, complaint};
+use super::require::{self, Required};
 use super::schema::{TOLERANCE, TOLERANCES};
 use super::units::{interval, span, span_range};
 use super::walk::Section;
 use crate::refusal::Complaint;
 use phase4::audit::{AuditSettings, Decision, Limits, Tolerance};
-use phase4::base::{MicroVolts, Program, Span};
-use std::ops::Range;
+use phase4::base::{Program, Span};
 
 /// How a scenario's device is judged.
 #[derive(Debug, Clone)]
 pub struct AuditPart {
     /// What the auditor is told.
     pub settings: AuditSettings,
-    /// Coverage cells that must be hit, by name, with the place in the file where each is asked for.
-    pub require: Vec<(String, Range<usize>)>,
+    /// Coverage cells that must be hit.
+    pub require: Vec<Required>,
 }
 
 /// Reads how this program is judged; `device` is the table that tells the program.
@@ -38,10 +38,12 @@ pub(super) fn read(section: &Section<'_, '_>, device: &Section<'_, '_>, program:
     settings.limits = check_limits(section, limits);
     let decide = section.share_millionths("decide").map(|millionths| millionths.checked_div(1_000).unwrap_or(0));
     set(&mut settings.decide_thousandths, decide);
-    if let Err(error) = settings.check(program) {
-        section.complain(complaint(&error, |parameter| written(section, device, parameter)));
+    let checked = settings.check(program);
+    if let Err(error) = &checked {
+        section.complain(complaint(error, |parameter| written(section, device, parameter)));
     }
-    let require = section.texts("require").into_iter().map(|text| (text.value.to_owned(), text.span)).collect();
+    // Which cells there are depends on settings that are sound.
+    let require = if checked.is_ok() { require::read(section, program, &settings) } else { Vec::new() };
     AuditPart { settings, require }
 }
 
@@ -107,15 +109,4 @@ fn tolerance(table: &Section<'_, '_>, usual: Tolerance) -> Tolerance {
     set(&mut tolerance.share_millionths, table.share_millionths("share"));
     set(&mut tolerance.tick, table.read("tick", span));
     tolerance
-}
-
-/// The least peak that must be seen, and the greatest that must not: the sensitivity, more and less its tolerance, rounded away from it.
-pub(super) fn sensitivity_limits(program: &Program, tolerance_thousandths: u32) -> (MicroVolts, MicroVolts) {
-    let sensitivity = u64::from(program.settings().sensitivity.0);
-    let part = |thousandths: u64| sensitivity.saturating_mul(thousandths);
-    let tolerance = u64::from(tolerance_thousandths);
-    let hi = part(tolerance.saturating_add(1_000)).div_ceil(1_000);
-    let lo = part(1_000_u64.saturating_sub(tolerance)).checked_div(1_000).unwrap_or(0);
-    let narrow = |value: u64| MicroVolts(u32::try_from(value).unwrap_or(u32::MAX));
-    (narrow(hi), narrow(lo))
 }

@@ -11,13 +11,16 @@ use phase4::device::Fault;
 /// The device of a scenario.
 #[derive(Debug, Clone)]
 pub struct DevicePart {
-    /// Its name, `reference device` if the scenario gives none.
+    /// Its name, [`UNNAMED`] if the scenario gives none.
     pub name: String,
     /// What it is set to.
     pub program: Program,
     /// What is wrong with it.
     pub fault: Option<Fault>,
 }
+
+/// The name of a device that the scenario does not name.
+pub const UNNAMED: &str = "reference device";
 
 /// Reads an interval, or `off` as none.
 pub(super) fn interval_or_off(text: &str) -> Result<Option<Interval>, Wrong> {
@@ -29,7 +32,7 @@ pub(super) fn read(section: &Section<'_, '_>) -> Option<DevicePart> {
     if !section.exists() {
         return None;
     }
-    let name = section.text("name").map_or_else(|| "reference device".to_owned(), |name| name.value.to_owned());
+    let name = section.text("name").map_or_else(|| UNNAMED.to_owned(), |name| name.value.to_owned());
     if !section.has("mode") {
         section.missing("mode");
     }

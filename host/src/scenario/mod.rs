@@ -9,6 +9,7 @@ mod heart;
 mod lead;
 mod param;
 mod replay;
+mod require;
 mod scan;
 mod schema;
 mod steps;
@@ -17,9 +18,10 @@ mod walk;
 mod words;
 
 pub use audit::AuditPart;
-pub use device::DevicePart;
+pub use device::{DevicePart, UNNAMED};
 pub use fault::describe as describe_fault;
 pub use heart::{Focus, HeartPart, MOST_FOCI, PlainAnatomy};
+pub use require::Required;
 pub use scan::Wrong;
 pub use steps::{MOST_STEPS, StepsPart};
 
@@ -144,14 +146,13 @@ fn read<'a>(walk: &Walk<'a>, table: &Spanned<DeTable<'a>>, folder: &Path) -> Res
     let heart = heart::read(&heart_table, lead_tables, folder)?;
     let audit_table = file.open("audit", &schema::AUDIT);
     let audit = program.map(|program| audit::read(&audit_table, &device_table, &program));
-    let thousandths = audit.as_ref().map_or(200, |audit| audit.settings.sensitivity_thousandths);
     let (length, seed, start) = read_run(&run, heart.as_ref());
     let Some(heart) = heart else { return Ok(None) };
     // A device that was refused leaves its words unknown: steps that name its windows would be refused for the wrong reason.
     let steps = if device_table.exists() && device.is_none() {
         StepsPart::default()
     } else {
-        let words = steps::vocabulary(&lead, program.as_ref(), thousandths);
+        let words = steps::vocabulary(&lead, program.as_ref().zip(audit.as_ref().map(|audit| &audit.settings)));
         let tables = file.open_each("step", &schema::STEP);
         steps::read(&tables, &words, &heart, &lead, program.as_ref(), source)
     };

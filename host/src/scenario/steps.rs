@@ -6,7 +6,8 @@ use super::walk::Section;
 use super::words::{self, Vocabulary};
 use crate::refusal::{Complaint, Source};
 use crate::run_data::StepText;
-use phase4::base::{Channel, Instant, Mode, ParamError, Problem, Program, Span};
+use phase4::audit::AuditSettings;
+use phase4::base::{Channel, Instant, ParamError, Problem, Program, Span};
 use phase4::bench::{Act, Event, Script, Step, When};
 use phase4::heart::plain::CELL_NAMES;
 use phase4::lead::LeadParams;
@@ -150,16 +151,19 @@ fn written(row: &Read, parameter: &str) -> Written {
 }
 
 /// The words that the steps of this scenario may use.
-pub(super) fn vocabulary(leads: &LeadParams, program: Option<&Program>, sensitivity_thousandths: u32) -> Vocabulary {
+pub(super) fn vocabulary(leads: &LeadParams, judged: Option<(&Program, &AuditSettings)>) -> Vocabulary {
     use phase4::heart::plain::{SITE_NAMES, TRACT_NAMES};
     use phase4::lead::NearField;
     let width = |params: Option<phase4::lead::ChannelParams>, usual: NearField| params.map_or(usual, |params| params.near).width;
-    let senses = program.filter(|program| program.senses().is_some() && program.settings().mode != Mode::Ooo);
+    let senses = judged.filter(|(program, _)| program.senses().is_some());
     Vocabulary {
         sites: &SITE_NAMES,
         tracts: &TRACT_NAMES,
         cells: &CELL_NAMES,
-        limits: senses.map(|program| super::audit::sensitivity_limits(program, sensitivity_thousandths)),
+        limits: senses.map(|(program, audit)| {
+            let (must_not_see, must_see) = audit.sensitivity_limits(program.settings().sensitivity);
+            (must_see, must_not_see)
+        }),
         widths: [width(leads.atrial, NearField::ATRIAL), width(leads.ventricular, NearField::VENTRICULAR)],
     }
 }

@@ -11,7 +11,7 @@ pub const CELLS: usize = 3;
 /// Foci beside the cells.
 pub const FOCI: usize = 1;
 /// Room for the steps of the script.
-pub const STEPS: usize = 2;
+pub const STEPS: usize = 3;
 
 const fn sound<T: Copy>(value: Result<T, base::ParamError>) -> T {
     match value {
@@ -94,8 +94,9 @@ pub fn device() -> Option<device::ReferenceDevice> {
 }
 
 /// The script.
-pub static SCRIPT: [bench::Step; 2] = [
+pub static SCRIPT: [bench::Step; 3] = [
     bench::Step { when: bench::When::After { event: bench::Event::Pulse(base::Channel::Ventricular), nth: 1, coupling: bench::Coupling { window: None, shift: bench::Amount::Sweep { from: base::Deviation::from_micros(300000), to: base::Deviation::from_micros(900000), step: base::Span::from_micros(50000) } } }, act: bench::Act::Beat(base::SiteId::new(3)), times: 13 },
+    bench::Step { when: bench::When::After { event: bench::Event::Pulse(base::Channel::Ventricular), nth: 2, coupling: bench::Coupling { window: Some(bench::WindowEnd::Refractory), shift: bench::Amount::Sweep { from: base::Deviation::from_micros(-60000), to: base::Deviation::from_micros(60000), step: base::Span::from_micros(10000) } } }, act: bench::Act::Signal(base::Channel::Ventricular, base::Signal { peak: base::MicroVolts(3000), width: base::Span::from_micros(40000) }), times: 13 },
     bench::Step { when: bench::When::After { event: bench::Event::Signal(base::Channel::Ventricular), nth: 7, coupling: bench::Coupling { window: None, shift: bench::Amount::Random { from: base::Deviation::from_micros(320000), to: base::Deviation::from_micros(700000) } } }, act: bench::Act::Beat(base::SiteId::new(3)), times: 10 },
 ];
 

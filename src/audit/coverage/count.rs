@@ -4,7 +4,7 @@ use super::bounds::{Bounds, EDGE_COUNT, EdgeKind};
 use super::stimulus::{Stimuli, Stimulus};
 use super::table::{self, After, CellId, CellState, Column, Need, ROW_COUNT, Stretch};
 use crate::audit::{AnchorKind, AuditSettings, How, Judgement, Outcome, Tier};
-use crate::base::{Channel, Instant, Mode, Program, Record, Span};
+use crate::base::{Channel, FocusId, Instant, Mode, Program, Record, SiteId, Span, TractId};
 
 /// The share of what is asked for that was hit.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
@@ -115,6 +115,17 @@ impl Coverage {
             whole: [0; 4],
             before: None,
         }
+    }
+
+    /// Tells where a tract leads, so that a wave can be followed back to what set it off: an ectopic beat that reaches the electrode
+    /// by conduction is premature all the same. A wave through a tract not told of counts as a beat of the rhythm.
+    pub fn know_tract(&mut self, tract: TractId, from: SiteId, to: SiteId) {
+        self.stimuli.origins.know_tract(tract, from, to);
+    }
+
+    /// Tells that a focus stands for the heart's own rhythm, such as a replayed series: its beats are not premature.
+    pub fn know_rhythm(&mut self, focus: FocusId) {
+        self.stimuli.origins.know_rhythm(focus);
     }
 
     /// Takes a record, in the order of the log.

@@ -2,6 +2,7 @@
 
 mod bounds;
 mod count;
+mod origin;
 mod stimulus;
 mod table;
 

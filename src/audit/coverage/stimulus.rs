@@ -1,5 +1,6 @@
 //! What was tried: signals and pulses since the last judged window, with what stood behind them.
 
+use super::origin::Origins;
 use super::table::Column;
 use crate::base::{Cause, CauseKind, Channel, Instant, Kind, Record, Signal, Span};
 use heapless::Deque;
@@ -34,16 +35,26 @@ pub(super) struct Stimuli {
     must_see: u32,
     signals: Deque<Stimulus, SIGNALS>,
     pulses: Deque<Emitted, PULSES>,
+    pub(super) origins: Origins,
     /// A signal or a pulse came about whose cause or answer the records do not tell.
     pub(super) guessed: bool,
 }
 
 impl Stimuli {
     pub(super) const fn new(channel: Option<Channel>, must_not_see: u32, must_see: u32) -> Self {
-        Self { channel, must_not_see, must_see, signals: Deque::new(), pulses: Deque::new(), guessed: false }
+        Self {
+            channel,
+            must_not_see,
+            must_see,
+            signals: Deque::new(),
+            pulses: Deque::new(),
+            origins: Origins::new(),
+            guessed: false,
+        }
     }
 
     pub(super) fn record(&mut self, record: &Record) {
+        self.origins.record(record);
         if let Some((channel, signal)) = record.as_signal() {
             // The beat that a pulse made itself lies in its own blanking: it is no event of the cycle.
             let own = self.channel.is_some_and(|paced| record.cause == Cause::new(CauseKind::Pulse, paced.number()));
@@ -72,7 +83,7 @@ impl Stimuli {
         } else if signal.peak.0 < self.must_see {
             Column::NearThreshold
         } else {
-            match cause.kind {
+            match self.origins.of(cause) {
                 CauseKind::Focus | CauseKind::Script => Column::Premature,
                 CauseKind::None => {
                     self.guessed = true;
