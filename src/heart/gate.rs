@@ -170,7 +170,10 @@ impl Gate<'_> {
     /// still matters to when it would have passed itself.
     fn blocked(&self, newcomer: &Newcomer, reason: BlockReason, passed: Last, now: Instant) -> (Fate, Last) {
         let fate = Fate::Blocked(newcomer.direction, reason, newcomer.recovery);
-        let conceal = self.tract.way(newcomer.direction).conceal;
+        let conceal = match reason {
+            BlockReason::Shut => super::Fraction::ONE,
+            _ => self.tract.way(newcomer.direction).conceal,
+        };
         if conceal == super::Fraction::ZERO {
             return (fate, self.passed);
         }
@@ -191,3 +194,6 @@ impl Decided {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -13,7 +13,7 @@
 //! | tract | forward | backward | gate |
 //! |---|---|---|---|
 //! | sinus – atrium | 70 ms: one-way sinoatrial time 40–98, mean 70 (checked) | 70 ms, blocked below 220 of recovery (ours) | at the sinus node |
-//! | atrium – junction | 110 + 400 · exp(−recovery/110) ms, blocked below 150, concealment 0.19 (tuned here: functional refractory period 362 ms, in Alboni's 330–450) | shut; [`ANATOMY_VA`]: 150 ms, blocked below 380 (tuned here: V-A time 230 from the apex; mean about 235, from memory) | at the junction |
+//! | atrium – junction | 110 + 400 · exp(−recovery/110) ms, blocked below 150, concealment 0.19 (tuned here: functional refractory period 362 ms, in Alboni's 330–450) | shut; open in [`ANATOMY_VA`]: 150 ms, blocked below 380 (tuned here: V-A time 230 from the apex; mean about 235, from memory) | at the junction |
 //! | junction – ventricle | 40 ms: HV 39.5 ± 3.9 (Alboni 1985: checked) | the same | at the junction |
 //! | ventricle – apex | 40 ms: half a QRS of 80 (common practice, no source) | the same | at the ventricle |
 //!
@@ -66,12 +66,11 @@ pub const SITES: [SiteParams; 5] = [
     SiteParams::new(Span::from_millis(250)).with_relative(Span::from_millis(50)),
 ];
 
-/// The tract table. The ventricle does not drive the atrium.
-pub const TRACTS: [TractParams; 4] = tracts(Way::closed(Span::from_millis(150)));
+/// The tract table. The ventricle does not drive the atrium: the way back through the node is shut.
+pub const TRACTS: [TractParams; 4] = tracts(NODE_BACKWARD.closed());
 
 /// The tract table of a heart whose ventricle drives the atrium when it can.
-pub const TRACTS_VA: [TractParams; 4] =
-    tracts(Way::new(Span::from_millis(150)).with_theta(Span::from_millis(380)).with_conceal(NODE_CONCEAL));
+pub const TRACTS_VA: [TractParams; 4] = tracts(NODE_BACKWARD);
 
 /// The cell table.
 pub const CELLS: [CellParams; 3] =
@@ -84,6 +83,8 @@ pub const ANATOMY: Anatomy<5, 4, 3> = sound(Anatomy::new(SITES, TRACTS, CELLS));
 pub const ANATOMY_VA: Anatomy<5, 4, 3> = sound(Anatomy::new(SITES, TRACTS_VA, CELLS));
 
 const NODE_CONCEAL: Fraction = checked(Fraction::from_millionths(190_000));
+
+const NODE_BACKWARD: Way = Way::new(Span::from_millis(150)).with_theta(Span::from_millis(380)).with_conceal(NODE_CONCEAL);
 
 const fn tracts(node_backward: Way) -> [TractParams; 4] {
     let sinus = Way::new(Span::from_millis(70));

@@ -14,7 +14,7 @@ use crate::base::{Decay, ParamError, SiteId, Span, low_u32};
 /// The exponential recovery of the AV node is that of Simson, Spear and Moore and of Shrier et al., Circulation 1987;76:1196
 /// (from the recovery curve follow 1:1, Wenckebach and 2:1: checked); human fits: Lin et al., Am J Cardiol 1997;80:1178 (checked).
 /// A wave that is blocked may still have gone some of the way (concealed conduction); `conceal` is how much it counts: nothing,
-/// or as if it had passed, or between.
+/// or as if it had passed, or between. One that is stopped by a shut way always counts as if it had passed.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 #[non_exhaustive]
 pub struct Way {
@@ -26,9 +26,10 @@ pub struct Way {
     pub tau: Option<Decay>,
     /// Recovery below which a wave is blocked, up to 60 s; zero never blocks.
     pub theta: Span,
-    /// How far a blocked wave counts as one that passed.
+    /// How far a wave that finds the gate unrecovered, or another wave ahead, counts as one that passed.
     pub conceal: Fraction,
-    /// True if nothing passes this way until it is opened.
+    /// True if nothing passes this way until it is opened. What is stopped there comes up to the gate and counts as having passed it:
+    /// otherwise every beat that is not conducted would find the way back open.
     pub shut: bool,
 }
 
@@ -41,10 +42,10 @@ impl Way {
         Self { base, gain: Span::ZERO, tau: None, theta: Span::ZERO, conceal: Fraction::ZERO, shut: false }
     }
 
-    /// A way that nothing passes. What is stopped there goes up to the gate and counts as having passed it: without that every
-    /// beat of the upper chamber that is itself not conducted would leave the way back open.
-    pub const fn closed(base: Span) -> Self {
-        Self { shut: true, conceal: Fraction::ONE, ..Self::new(base) }
+    /// The same, shut until it is opened.
+    #[must_use]
+    pub const fn closed(self) -> Self {
+        Self { shut: true, ..self }
     }
 
     /// The same with a delay that grows by up to `gain` the less the gate has recovered.

@@ -10,7 +10,7 @@ const HIS: SiteId = SiteId::new(1);
 /// A way that is dead for this long after each passage, and does not care about what it blocks.
 fn dead_time(theta: u64) -> Anatomy<2, 1, 0> {
     let forward = Way::new(span(100)).with_theta(span(theta));
-    let tract = TractParams::new(ATRIUM, HIS, Fraction::ZERO, forward, Way::closed(span(100)));
+    let tract = TractParams::new(ATRIUM, HIS, Fraction::ZERO, forward, Way::new(span(100)).closed());
     Anatomy::new([SiteParams::new(Span::from_micros(1)); 2], [tract], []).unwrap()
 }
 
@@ -84,7 +84,7 @@ fn two_to_one_block_is_hidden_by_an_escape_below_it() {
 #[test]
 fn complete_block_is_a_regular_pattern_of_two_clocks() {
     let cells = [CellParams::new(plain::SINUS, every(800)), CellParams::new(plain::VENTRICLE, every(1_500))];
-    let anatomy = plain_with(Way::closed(span(110)), cells);
+    let anatomy = plain_with(Way::new(span(110)).closed(), cells);
     let mut heart = Heart::new(&anatomy, &[], Instant::ZERO).unwrap();
     let log = run(&mut heart, ms(300_000));
     let (p, r) = (times(&log, plain::ATRIUM), times(&log, plain::VENTRICLE));

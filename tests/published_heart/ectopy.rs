@@ -45,7 +45,7 @@ fn an_early_beat_in_a_slow_rhythm_is_interpolated() {
     let site = |refractory: u64| SiteParams::new(span(refractory));
     let (atrium, ventricle) = (SiteId::new(0), SiteId::new(1));
     let node = Way::new(span(90)).with_recovery(span(780), decay(110)).with_theta(span(230));
-    let tract = TractParams::new(atrium, ventricle, Fraction::ONE, node, Way::closed(span(90)));
+    let tract = TractParams::new(atrium, ventricle, Fraction::ONE, node, Way::new(span(90)).closed());
     let anatomy = Anatomy::new([site(210), site(300)], [tract], [CellParams::new(atrium, every(1_200))]).unwrap();
     let mut last_pr = 0;
     for coupling in [320, 420, 500, 600, 700, 760] {

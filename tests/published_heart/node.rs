@@ -11,7 +11,7 @@ const HIS: SiteId = SiteId::new(1);
 
 fn r1() -> Anatomy<2, 1, 0> {
     let forward = Way::new(span(90)).with_recovery(span(780), decay(110)).with_theta(span(230));
-    let node = TractParams::new(ATRIUM, HIS, Fraction::ONE, forward, Way::closed(span(90)));
+    let node = TractParams::new(ATRIUM, HIS, Fraction::ONE, forward, Way::new(span(90)).closed());
     Anatomy::new([SiteParams::new(span(50)); 2], [node], []).unwrap()
 }
 
