@@ -77,9 +77,9 @@ fn way(way: &Way) -> String {
         Some(tau) => format!(".with_recovery({}, sound(base::Decay::new({})))", span(way.gain), span(tau.tau())),
         None => String::new(),
     };
-    let begin = if way.shut { "closed" } else { "new" };
+    let closed = if way.shut { ".closed()" } else { "" };
     format!(
-        "heart::Way::{begin}({}){recovery}.with_theta({}).with_conceal({})",
+        "heart::Way::new({}){recovery}.with_theta({}).with_conceal({}){closed}",
         span(way.base),
         span(way.theta),
         fraction(way.conceal)
