@@ -271,12 +271,11 @@ pub(super) fn need(stretch: Stretch, column: Column) -> Need {
 impl CellId {
     /// The cell of this name, such as `VS/alert/PVC`, on the channel the mode paces.
     pub fn from_name(name: &str, channel: Channel) -> Option<Self> {
-        let mut parts = name.split('/');
-        let (after, stretch, column) = (parts.next()?, parts.next()?, parts.next()?);
-        if parts.next().is_some() {
-            return None;
-        }
-        let (after, stretch) = ROWS.into_iter().find(|row| row.0.code(channel) == after && row.1.code() == stretch)?;
+        // Codes are stripped rather than the name split: core's search for a separator can reach a panic.
+        let ((after, stretch), column) = ROWS.into_iter().find_map(|(after, stretch)| {
+            let rest = name.strip_prefix(after.code(channel))?.strip_prefix('/')?;
+            Some(((after, stretch), rest.strip_prefix(stretch.code())?.strip_prefix('/')?))
+        })?;
         let column = Column::ALL.into_iter().find(|one| one.code(channel) == column)?;
         Some(Self { after, stretch, column })
     }

@@ -1,4 +1,5 @@
-use phase4::audit::{self, AuditSettings, RuleId, RuleSet, Tolerance, Verdict};
+use phase4::audit::coverage::{After, CellId, Column, EdgeKind, Stretch, WholeRun};
+use phase4::audit::{self, AuditSettings, Coverage, RuleId, RuleSet, Tolerance, Verdict};
 
 /// As many hypotheses as a target keeps.
 type Auditor = audit::Auditor<12>;
@@ -48,4 +49,35 @@ crate::entries! { AUDITOR:
     Auditor::loosened as fn(_);
     Auditor::lost as fn(_);
     Auditor::overdue_since as fn(_);
+}
+
+fn lines(coverage: &Coverage) -> (usize, usize, usize, usize) {
+    let cells = Coverage::cells(coverage).count();
+    let edges = Coverage::edges(coverage).count();
+    let whole = Coverage::whole_run(coverage).count();
+    (Coverage::rows(coverage).count(), cells, edges, whole)
+}
+
+crate::entries! { COVERAGE:
+    Coverage::new as fn(_, _);
+    Coverage::record as fn(_, _);
+    Coverage::judged as fn(_, _);
+    Coverage::need as fn(_, _);
+    Coverage::state as fn(_, _);
+    Coverage::hits as fn(_, _);
+    Coverage::decided as fn(_, _, _);
+    Coverage::score as fn(_);
+    Coverage::edge_score as fn(_);
+    Coverage::guessed as fn(_);
+    Coverage::channel as fn(_);
+    lines as fn(_);
+    CellId::from_name as fn(_, _);
+    CellId::name as fn(_, _);
+    After::code as fn(_, _);
+    After::line as fn(_);
+    Column::code as fn(_, _);
+    Column::has_stimulus as fn(_);
+    EdgeKind::code as fn(_);
+    Stretch::code as fn(_);
+    WholeRun::code as fn(_);
 }
