@@ -54,10 +54,14 @@ pub struct Auditor<const H: usize> {
     pub(super) pulses: Deque<Micros, WAITING_PULSES>,
     pub(super) history: History,
     pub(super) overdue: Option<Overdue>,
+    /// The limit of a pause that has become too long, while no pulse is overdue.
+    pub(super) pause: Option<Instant>,
     pub(super) envelope: Envelope,
     pub(super) scores: Scores,
     /// What the next pulse in its window proves: signals in refractory and below the limit since the last anchor.
     pub(super) owed: RuleSet,
+    /// The last pulse was one that no state allowed.
+    pub(super) after_finding: bool,
     judgements: Deque<Judgement, WAITING_JUDGEMENTS>,
     pub(super) counts: Counts,
     now: Instant,
@@ -117,9 +121,11 @@ impl<const H: usize> Auditor<H> {
             pulses: Deque::new(),
             history: History::new(origin),
             overdue: None,
+            pause: None,
             envelope: Envelope::new(program, settings, &windows, clock.offset(start), matches!(origin, Origin::Unknown(_))),
             scores: Scores::default(),
             owed: RuleSet::EMPTY,
+            after_finding: false,
             judgements: Deque::new(),
             counts: Counts::default(),
             now: start,
@@ -183,6 +189,7 @@ impl<const H: usize> Auditor<H> {
             self.judge_pulse(pulse);
         }
         self.close_at_end(now);
+        self.close_pause();
         if self.scores.of(RuleId::En6).broken == 0 && !self.blind.has(RuleId::En6) {
             self.scores.held(RuleId::En6, None);
         }
@@ -236,6 +243,9 @@ impl<const H: usize> Auditor<H> {
 
     fn take_signal(&mut self, channel: Channel, signal: Signal, now: Micros) {
         if self.paces == Some(channel) {
+            if self.windows.may_see(signal.peak.0) {
+                self.close_pause();
+            }
             self.envelope.signal(now, signal.peak.0, &self.windows, &mut self.scores, self.blind);
         }
         if self.senses != Some(channel) || self.paces != Some(channel) {

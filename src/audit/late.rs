@@ -23,14 +23,11 @@ impl<const H: usize> Auditor<H> {
     /// No state is left that would not have paced by now.
     pub(super) fn judge_silence(&mut self, at: Micros) {
         // A signal on its way to its sense may have come first: silence then tells that it was sensed. One that no state can have
-        // sensed excuses nothing, and is settled as if silence were not there.
-        if let Some(waiting) = self.signals.front() {
-            let windows = &self.windows;
-            if waiting.signal.at.saturating_add(windows.detect.lo) < at {
-                let excuses = self.states.iter().any(|state| windows.fate(state, &waiting.signal, None).sensed().is_some());
-                self.settle_signal(if excuses { at } else { waiting.signal.at }, false);
-                return;
-            }
+        // sensed excuses nothing.
+        let first = self.signals.front().map(|waiting| waiting.signal.at.saturating_add(self.windows.detect.lo));
+        if first.is_some_and(|first| first < at) {
+            self.settle_signal(at, false);
+            return;
         }
         if self.overdue.is_some() {
             // No second finding while one is open; the next signal or pulse begins anew.
@@ -40,22 +37,29 @@ impl<const H: usize> Auditor<H> {
         let Some(last) = self.states.iter().copied().max_by_key(|state| self.windows.expires(state)) else { return };
         let found = self.with_window(self.judgement(at, Outcome::Broken, How::Missing, RuleId::Lr1), &last);
         if let (Some(anchor), Some(window)) = (found.anchor, found.window) {
-            self.overdue = Some(Overdue { anchor, window, also: RuleSet::EMPTY });
+            let also = if self.pause.take().is_some() { RuleSet::only(RuleId::En2) } else { RuleSet::EMPTY };
+            self.overdue = Some(Overdue { anchor, window, also });
         }
         naming::begin(&mut self.states, &self.windows, Origin::Unknown(at));
     }
 
-    /// The present pause has become longer than declared.
+    /// The present pause has become longer than declared. It is a finding of its own only if no pulse becomes overdue in it.
     pub(super) fn judge_pause(&mut self) {
         let limit = self.envelope.pause_limit();
         self.envelope.pause_reported();
         self.scores.broken(RuleId::En2, None);
-        if let Some(overdue) = &mut self.overdue {
-            overdue.also = overdue.also.with(RuleId::En2);
-            return;
+        match &mut self.overdue {
+            Some(overdue) => overdue.also = overdue.also.with(RuleId::En2),
+            None => self.pause = Some(self.clock.instant(limit)),
         }
+    }
+
+    /// The pause is over and no pulse was overdue in it.
+    pub(super) fn close_pause(&mut self) {
+        let Some(limit) = self.pause.take() else { return };
         self.counts.decided = self.counts.decided.saturating_add(1);
-        self.say(self.judgement(limit, Outcome::Broken, How::Missing, RuleId::En2));
+        let judgement = self.judgement(self.clock.offset(limit), Outcome::Broken, How::Missing, RuleId::En2);
+        self.say(Judgement { at: limit, ..judgement });
     }
 
     /// A pulse came while one was overdue. True if it was that one, late, or the next of a series with one left out.

@@ -24,6 +24,7 @@ struct Expected {
 impl<const H: usize> Auditor<H> {
     /// Judges a pulse on the channel that paces.
     pub(super) fn judge_pulse(&mut self, at: Micros) {
+        self.close_pause();
         let broken = self.envelope.pulse(at, &mut self.scores, self.blind);
         if !self.blind.has(RuleId::En4) {
             self.scores.held(RuleId::En4, None);
@@ -34,11 +35,15 @@ impl<const H: usize> Auditor<H> {
             match self.expected(at) {
                 Some(expected) => {
                     self.judge_expected(at, &expected);
-                    if !broken.is_empty() {
-                        self.judge_envelope(at, broken);
-                    }
+                    // Too close behind a pulse that was a finding already: the other side of that one.
+                    let known = if self.after_finding { RuleSet::only(RuleId::En1) } else { RuleSet::EMPTY };
+                    self.judge_envelope(at, broken.without(known));
+                    self.after_finding = false;
                 }
-                None => self.judge_unexpected(at, broken),
+                None => {
+                    self.judge_unexpected(at, broken);
+                    self.after_finding = true;
+                }
             }
         }
         self.owed = RuleSet::EMPTY;

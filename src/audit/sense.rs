@@ -42,8 +42,6 @@ struct Reach {
 }
 
 impl Fate {
-    /// The state was not there any more: it would have paced before.
-    const GONE: Self = Self { stays: false, senses: None, why: None, later: false };
     const NOTHING: Self = Self { stays: true, senses: None, why: None, later: false };
 
     /// The state that the sense leads to.
@@ -79,11 +77,7 @@ impl Windows {
             Order::Either => self.expires(state).saturating_add(self.uncertainty),
         };
         if first > expires {
-            return match pulse {
-                Some(_) => Fate { later: true, ..Fate::NOTHING },
-                None if self.expires(state) < first => Fate::GONE,
-                None => Fate::NOTHING,
-            };
+            return Fate { later: pulse.is_some(), ..Fate::NOTHING };
         }
         if !self.may_see(signal.peak) {
             return Fate::NOTHING;
@@ -107,8 +101,14 @@ impl Windows {
             let end = signal.at.saturating_add(signal.width);
             let may_outlast = self.straddle == Straddle::End && end > blanked_to.0;
             if may_outlast {
-                let reach = Reach { first: first.max(blanked_to.0), last: last.max(blanked_to.1), ..reach };
-                self.detect_in(state, reach, &mut fate);
+                // At the end of blanking, if refractory can be over by then; both windows count from the same anchor.
+                let at_end = self.outlasting_is_seen();
+                let last = if at_end { last.max(blanked_to.1) } else { last };
+                let reach = Reach { first: first.max(blanked_to.0), last, ..reach };
+                fate.stays |= !at_end && first < blanked_to.1;
+                if reach.first <= last {
+                    self.detect_in(state, reach, &mut fate);
+                }
             }
             if !may_outlast || end <= blanked_to.1 {
                 fate.stays = true;

@@ -27,13 +27,15 @@ impl<const H: usize> Auditor<H> {
         let mut in_alert = true;
         let windows = &self.windows;
         let detected = signal.at.saturating_add(windows.detect.lo);
+        // Past its expiry a state lives on only if the next signal may have come before it.
+        let lives = |state: &Hypothesis| {
+            let over = windows.expires(state).saturating_add(windows.uncertainty);
+            before_its_time || over >= at || next.is_some_and(|next| next <= over)
+        };
         self.states.retain(|state| {
             count = count.saturating_add(1);
             alone = Some(*state);
             let mut fate = windows.fate(state, &signal, None);
-            let over = windows.expires(state).saturating_add(windows.uncertainty);
-            // Past its expiry a state lives on only if the next signal may have come before it.
-            fate.stays &= over >= at || next.is_some_and(|next| next <= over);
             fate.stays |= before_its_time;
             in_alert &= detected >= windows.refractory_of(state).1;
             if let Some(new) = fate.sensed() {
@@ -44,11 +46,15 @@ impl<const H: usize> Auditor<H> {
                 });
                 why = why.or(fate.why);
             }
-            if fate.stays {
+            if fate.stays && lives(state) {
                 stays = Some(stays.flatten().or(state.why));
             }
             fate.stays
         });
+        // If none is left, it is for silence to say so.
+        if sensed.is_some() || stays.is_some() {
+            self.states.retain(lives);
+        }
         let alone = alone.filter(|_| count == 1);
         match (sensed, stays) {
             (Some(sensed), None) => {
@@ -76,8 +82,7 @@ impl<const H: usize> Auditor<H> {
                     self.owed = self.owed.with(RuleId::Rf1);
                 }
             }
-            // Every state was past its expiry: silence has removed them all before, or will at once.
-            (None, None) => naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at)),
+            (None, None) => {}
         }
     }
 

@@ -157,13 +157,16 @@ impl Windows {
         }
     }
 
+    /// True if a signal that outlasts blanking can be sensed at its end: where blanking may last as long as the refractory period.
+    pub(super) fn outlasting_is_seen(&self) -> bool {
+        let refractory_ends = self.refractory.lo.saturating_sub(self.guard);
+        self.straddle == Straddle::End && self.blanking.hi.saturating_add(self.guard) >= refractory_ends
+    }
+
     /// The latest a sense can follow its signal's onset: by the detection delay, or at the end of blanking where a signal that
     /// outlasts it is seen there.
     pub(super) fn latest_sense(&self) -> Micros {
-        match self.straddle {
-            Straddle::End if self.blanking.hi >= self.refractory.lo => self.detect.hi.max(self.blanking.hi),
-            Straddle::End | Straddle::Onset => self.detect.hi,
-        }
+        if self.outlasting_is_seen() { self.detect.hi.max(self.blanking.hi.saturating_add(self.guard)) } else { self.detect.hi }
     }
 
     /// When everything that could bear on a signal's sense has been seen: no pulse observed later can have preceded it.

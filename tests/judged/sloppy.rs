@@ -53,6 +53,27 @@ pub(crate) enum Kind {
     Ordinary,
 }
 
+/// One thing that a device does wrong once.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(crate) enum Slip {
+    /// An escape interval is this much longer than its tolerance allows.
+    Late(u64),
+    /// An escape interval is this much shorter than its tolerance allows.
+    Early(u64),
+    /// A pulse is left out; the timers run on as if it had come.
+    Missing,
+    /// A pulse comes again this much later.
+    Twice(u64),
+    /// A sense changes nothing.
+    IgnoresSense,
+    /// A signal inside refractory, clear of its edge, restarts everything.
+    RestartsInRefractory,
+    /// The escape interval after a pulse is that after a sense.
+    HysteresisAfterPulse,
+    /// The escape interval after a sense is that after a pulse.
+    NoHysteresisAfterSense,
+}
+
 /// A program, how it is judged, and what a device did with it.
 #[derive(Debug, Clone)]
 pub(crate) struct Script {
@@ -62,6 +83,8 @@ pub(crate) struct Script {
     pub(crate) start: Instant,
     /// When a judge that joins late begins to watch.
     pub(crate) joins_at: Option<Instant>,
+    /// When the slip happened, if it did.
+    pub(crate) slipped_at: Option<Instant>,
 }
 
 impl core::fmt::Display for Script {
@@ -77,13 +100,19 @@ impl core::fmt::Display for Script {
     }
 }
 
-/// The script of this number.
+/// The script of this number, without a slip.
 pub(crate) fn script(seed: u64, kind: Kind) -> Script {
+    slipping(seed, kind, None)
+}
+
+/// The script of this number, with this slip where it has an occasion for it.
+pub(crate) fn slipping(seed: u64, kind: Kind, slip: Option<Slip>) -> Script {
     let mut dice = Dice::new(seed);
     let program = program(&mut dice, kind);
     let settings = settings(&mut dice, kind, &program);
     let start = 1_000_000 + if dice.one_in(3) { (1 << 32) - 4_000_000 } else { dice.below(1_000_000) };
     let mut run = Run::new(program, settings, start, dice, kind);
+    run.slip = slip.map(|slip| (slip, run.dice.below(4)));
     let wanted = 12 + run.dice.below(30);
     while (run.seen.len() as u64) < wanted {
         run.step();
@@ -153,6 +182,14 @@ fn settings(dice: &mut Dice, kind: Kind, program: &Program) -> AuditSettings {
 struct Coming {
     detected_at: u64,
     blanked: bool,
+    loud: bool,
+}
+
+/// What a cycle began with.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum After {
+    Pulse,
+    Sense,
 }
 
 /// What happens next, and when.
@@ -179,6 +216,9 @@ struct Run {
     blanked_to: u64,
     coming: std::collections::VecDeque<Coming>,
     planned: u64,
+    /// What still goes wrong, and after how many occasions.
+    slip: Option<(Slip, u64)>,
+    slipped_at: Option<u64>,
     /// True instants with what was recorded.
     seen: Vec<(u64, Seen)>,
 }
@@ -205,9 +245,11 @@ impl Run {
             blanked_to: 0,
             coming: std::collections::VecDeque::new(),
             planned: 0,
+            slip: None,
+            slipped_at: None,
             seen: Vec::new(),
         };
-        run.restart(start, program.settings().lower, run.settings.lower);
+        run.restart(start, After::Pulse);
         run.plan();
         run
     }
@@ -223,16 +265,47 @@ impl Run {
         if self.dice.one_in(3) { nominal } else { self.dice.between(nominal.saturating_sub(low), nominal + high) }
     }
 
-    fn restart(&mut self, at: u64, escape: Interval, tolerance: Tolerance) {
+    /// True if this is the occasion for the slip that is still to come.
+    fn slips(&mut self, at: u64, suits: impl Fn(Slip) -> bool) -> Option<Slip> {
+        let (slip, wait) = self.slip.filter(|(slip, _)| suits(*slip))?;
+        self.slip = (wait > 0).then(|| (slip, wait - 1));
+        if wait > 0 {
+            return None;
+        }
+        self.slipped_at = Some(at);
+        Some(slip)
+    }
+
+    fn restart(&mut self, at: u64, after: After) {
+        let set = *self.program.settings();
+        let hysteresis = set.hysteresis.is_some() && self.program.senses().is_some();
+        let slip = self.slips(at, |slip| match slip {
+            Slip::Late(_) | Slip::Early(_) => true,
+            Slip::HysteresisAfterPulse => hysteresis && after == After::Pulse,
+            Slip::NoHysteresisAfterSense => hysteresis && after == After::Sense,
+            _ => false,
+        });
+        let as_after = match slip {
+            Some(Slip::HysteresisAfterPulse) => After::Sense,
+            Some(Slip::NoHysteresisAfterSense) => After::Pulse,
+            _ => after,
+        };
+        let (escape, tolerance) = match as_after {
+            After::Sense if hysteresis => (self.program.escape_after_sense(), self.settings.hysteresis),
+            _ => (set.lower, self.settings.lower),
+        };
         let bits = escape.as_fixed().to_bits() + self.carried;
         let whole = (bits + (1 << 31)) >> 32;
         let fraction = bits.wrapping_sub(whole << 32);
         self.anchor = at;
-        let escape = self.timer(whole, tolerance);
+        let escape = match slip {
+            Some(Slip::Late(by)) => whole + tolerance.high.as_micros() + by,
+            Some(Slip::Early(by)) => whole - tolerance.low.as_micros() - by,
+            _ => self.timer(whole, tolerance),
+        };
         self.expires = at + escape;
         // Carried only while the timer is exact: a sloppy one has its own way with fractions.
         self.carried = if escape == whole && fraction < (1 << 31) { fraction } else { 0 };
-        let set = *self.program.settings();
         let more = u64::from(set.edge == Edge::Inside);
         self.refractory_to = at + more + self.timer(set.refractory.as_micros(), self.settings.refractory);
         self.blanked_to = at + more + self.timer(set.blanking.as_micros(), self.settings.blanking);
@@ -283,7 +356,6 @@ impl Run {
     }
 
     fn step(&mut self) {
-        let set = *self.program.settings();
         match self.next() {
             Next::Signal(at) => {
                 self.now = at;
@@ -293,10 +365,19 @@ impl Run {
             Next::Detection(at) => {
                 self.now = at;
                 let coming = self.coming.pop_front().unwrap();
-                if !coming.blanked && at >= self.blanked_to && at >= self.refractory_to {
+                let blanked = coming.blanked || at < self.blanked_to;
+                let clearly = self.program.settings().refractory.as_micros() - self.settings.refractory.low.as_micros();
+                let inside = at < self.refractory_to && at + 1 < self.anchor + clearly;
+                let acts = if blanked {
+                    false
+                } else if inside && coming.loud {
+                    self.slips(at, |slip| slip == Slip::RestartsInRefractory).is_some()
+                } else {
+                    at >= self.refractory_to && self.slips(at, |slip| slip == Slip::IgnoresSense).is_none()
+                };
+                if acts {
                     self.carried = 0;
-                    let tolerance = if set.hysteresis.is_some() { self.settings.hysteresis } else { self.settings.lower };
-                    self.restart(at, self.program.escape_after_sense(), tolerance);
+                    self.restart(at, After::Sense);
                     if self.dice.one_in(2) {
                         self.plan();
                     }
@@ -304,8 +385,12 @@ impl Run {
             }
             Next::Expiry(at) => {
                 self.now = at;
-                self.seen.push((at, Seen::Pulse));
-                self.restart(at, set.lower, self.settings.lower);
+                match self.slips(at, |slip| matches!(slip, Slip::Missing | Slip::Twice(_))) {
+                    Some(Slip::Missing) => {}
+                    Some(Slip::Twice(later)) => self.seen.extend([(at + later, Seen::Pulse), (at, Seen::Pulse)]),
+                    _ => self.seen.push((at, Seen::Pulse)),
+                }
+                self.restart(at, After::Pulse);
                 if self.dice.one_in(2) {
                     self.plan();
                 }
@@ -341,9 +426,9 @@ impl Run {
         let began_blanked = at < self.blanked_to && at >= self.anchor;
         let outlasts = set.straddle == Straddle::End && at + width > self.blanked_to;
         let coming = if began_blanked && outlasts {
-            Coming { detected_at: detected_at.max(self.blanked_to), blanked: false }
+            Coming { detected_at: detected_at.max(self.blanked_to), blanked: false, loud: peak >= hi }
         } else {
-            Coming { detected_at, blanked: began_blanked }
+            Coming { detected_at, blanked: began_blanked, loud: peak >= hi }
         };
         // Detections keep the order of the onsets.
         let after = self.coming.back().map_or(0, |before| before.detected_at);
@@ -369,6 +454,13 @@ impl Run {
         } else {
             None
         };
-        Script { program: self.program, settings: self.settings, records, start: Instant::from_micros(self.start), joins_at }
+        Script {
+            program: self.program,
+            settings: self.settings,
+            records,
+            start: Instant::from_micros(self.start),
+            joins_at,
+            slipped_at: self.slipped_at.map(Instant::from_micros),
+        }
     }
 }
