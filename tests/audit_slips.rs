@@ -1,4 +1,5 @@
 //! Devices that do one thing wrong once: at most one finding, however much goes on around it, and by a rule that says what it was.
+//! `PHASE4_SCRIPTS=100000 cargo test --release --test audit_slips` is the long form.
 #![allow(
     clippy::arithmetic_side_effects,
     clippy::as_conversions,
@@ -11,7 +12,7 @@
 mod judged;
 
 use judged::sloppy::{Kind, Slip, slipping};
-use judged::{Finding, judge_with};
+use judged::{Finding, judge_with, scripts_or};
 use phase4::audit::{Auditor, Outcome, RuleId};
 
 #[derive(Debug, Default)]
@@ -24,7 +25,7 @@ struct Found {
 /// Runs many scripts with this slip in each. A slip may hide: a beat may come before the late pulse, say.
 fn scripts(kind: Kind, slip: Slip, rules: &[RuleId]) -> Found {
     let mut all = Found::default();
-    for seed in 0..4_000 {
+    for seed in 0..scripts_or(4_000) {
         let script = slipping(seed, kind, Some(slip));
         let Some(slipped_at) = script.slipped_at else { continue };
         let auditor = Auditor::<12>::new(&script.program, &script.settings, script.start).unwrap();

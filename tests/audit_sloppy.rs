@@ -14,15 +14,10 @@
 
 mod judged;
 
-use judged::judge_with;
 use judged::sloppy::{Kind, Script, script};
+use judged::{judge_with, scripts_or};
 use phase4::audit::{Auditor, Outcome};
 use phase4::base::Instant;
-
-/// How many scripts of each sort are tried.
-fn scripts() -> u64 {
-    std::env::var("PHASE4_SCRIPTS").ok().and_then(|count| count.parse().ok()).unwrap_or(24_000)
-}
 
 #[derive(Debug, Default, Clone, Copy)]
 struct Total {
@@ -47,7 +42,7 @@ fn judged<const H: usize>(script: &Script, auditor: Auditor<H>, from: Instant) -
 
 fn all(kind: Kind) -> Total {
     let mut total = Total::default();
-    for seed in 0..scripts() {
+    for seed in 0..scripts_or(24_000) {
         let script = script(seed, kind);
         let outcome = std::panic::catch_unwind(|| {
             let auditor = Auditor::<256>::new(&script.program, &script.settings, script.start).unwrap();
@@ -66,7 +61,7 @@ fn all(kind: Kind) -> Total {
         total.undecided += host.undecided;
         total.loosened += host.loosened;
     }
-    println!("{kind:?}: {} scripts, {total:?}, decided share {:.4}", scripts(), total.share());
+    println!("{kind:?}: {} scripts, {total:?}, decided share {:.4}", scripts_or(24_000), total.share());
     total
 }
 

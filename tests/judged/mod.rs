@@ -41,6 +41,11 @@ pub(crate) const fn rate(per_minute: u16) -> Interval {
     Interval::from_rate_nearest(Rate::per_minute(per_minute))
 }
 
+/// How many random scripts are tried: so many, or what `PHASE4_SCRIPTS` says.
+pub(crate) fn scripts_or(usual: u64) -> u64 {
+    std::env::var("PHASE4_SCRIPTS").ok().and_then(|count| count.parse().ok()).unwrap_or(usual)
+}
+
 /// A mode at 60 per minute, blanking 100 ms, refractory 250 ms.
 pub(crate) fn at_60(mode: Mode) -> Settings {
     Settings::new(mode, rate(60))
