@@ -10,6 +10,7 @@ pub mod judge;
 pub mod log_file;
 pub mod output;
 pub mod refusal;
+pub mod report;
 pub mod run;
 pub mod run_data;
 pub mod scenario;
