@@ -85,7 +85,7 @@ impl<const H: usize> Auditor<H> {
         }
         let margin = overdue.window.latest.deviation_from(seen);
         let measure = Measure { deviation: clamp(deviation), margin: clamp(margin) };
-        self.scores.broken(rule, Some(measure).filter(|_| matches!(rule, RuleId::Lr1 | RuleId::Hy1)));
+        self.scores.broken(rule, Some(measure).filter(|_| matches!(rule, RuleId::Lr1 | RuleId::Hy1 | RuleId::Hy2)));
         self.say(judgement);
         self.states.only(Hypothesis::paced(at));
         true

@@ -6,6 +6,7 @@ use super::rows::Rows;
 use super::way::Direction;
 use super::{Anatomy, FocusParams};
 use crate::base::{Cause, CellId, FineInstant, FocusId, Instant, ParamError, Record, SiteId, Span, TractId};
+use core::fmt;
 
 /// No time: what a slot waits for that waits for nothing.
 pub(super) const NEVER: Instant = Instant::MAX;
@@ -24,7 +25,7 @@ pub(super) const NEVER: Instant = Instant::MAX;
 /// # Model
 /// A site that fires sends a wave into every tract at it but those that have just brought one. Escape rhythms, block, echoes and
 /// compensatory pauses have no code of their own: they follow from cells, tissue and tracts.
-#[derive(Debug, Clone)]
+#[derive(Clone, PartialEq, Eq)]
 pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: usize> {
     pub(super) anatomy: &'a Anatomy<S, T, C>,
     pub(super) foci: &'a [FocusParams<'a>; F],
@@ -68,13 +69,22 @@ pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: us
 }
 
 /// The wave in a tract, where there is one. When it arrives stands in the flat array.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) struct Crossing {
     pub(super) pass_at: Instant,
     pub(super) took: Span,
     pub(super) direction: Direction,
     /// What had fired the site it came from.
     pub(super) cause: Cause,
+}
+
+impl<const S: usize, const T: usize, const C: usize, const F: usize> fmt::Debug for Heart<'_, S, T, C, F> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let Self { at, next, fired, wave_due, cell_due, .. } = self;
+        let mut heart = f.debug_struct("Heart");
+        heart.field("at", at).field("next", next).field("fired", fired).field("wave_due", wave_due).field("cell_due", cell_due);
+        heart.finish_non_exhaustive()
+    }
 }
 
 impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'a, S, T, C, F> {
