@@ -9,7 +9,7 @@ use super::naming;
 use super::scores::Scores;
 use super::sense::Shown;
 use super::windows::Windows;
-use super::{AuditSettings, Judgement, RuleId, RuleSet, Score};
+use super::{AuditSettings, Judgement, Outcome, RuleId, RuleSet, Score};
 use crate::base::{Channel, Instant, Kind, ParamError, Program, Record, Signal};
 use heapless::Deque;
 
@@ -75,6 +75,7 @@ pub(super) struct Counts {
     pub(super) decided: u64,
     pub(super) undecided: u64,
     pub(super) loosened: u32,
+    broken: u32,
     lost: u32,
 }
 
@@ -211,9 +212,9 @@ impl<const H: usize> Auditor<H> {
         self.scores.of(rule)
     }
 
-    /// How often any rule was broken.
-    pub fn broken(&self) -> u32 {
-        self.scores.broken_in_all()
+    /// Findings so far: one for each fault, though it may break several rules.
+    pub const fn broken(&self) -> u32 {
+        self.counts.broken
     }
 
     /// Windows and signals about which everything could be told.
@@ -243,10 +244,10 @@ impl<const H: usize> Auditor<H> {
 
     fn take_signal(&mut self, channel: Channel, signal: Signal, now: Micros) {
         if self.paces == Some(channel) {
-            if self.windows.may_see(signal.peak.0) {
+            if self.whole.may_see(signal.peak.0) {
                 self.close_pause();
             }
-            self.envelope.signal(now, signal.peak.0, &self.windows, &mut self.scores, self.blind);
+            self.envelope.signal(now, signal.peak.0, &self.whole, &mut self.scores, self.blind);
         }
         if self.senses != Some(channel) || self.paces != Some(channel) {
             return;
@@ -360,6 +361,9 @@ impl<const H: usize> Auditor<H> {
 
     /// Hands out a judgement.
     pub(super) fn say(&mut self, judgement: Judgement) {
+        if judgement.outcome == Outcome::Broken {
+            self.counts.broken = self.counts.broken.saturating_add(1);
+        }
         if self.judgements.push_back(judgement).is_err() {
             self.counts.lost = self.counts.lost.saturating_add(1);
         }

@@ -118,6 +118,11 @@ impl Envelope {
         broken
     }
 
+    /// Something took the place of the pulse that was due: no second finding for the pause that it leaves.
+    pub(super) const fn excuse(&mut self, at: Micros) {
+        self.heard = at;
+    }
+
     fn hear(&mut self, at: Micros, scores: &mut Scores, blind: RuleSet) {
         if !self.reported && !blind.has(RuleId::En2) {
             scores.held(RuleId::En2, Some(Measure::not_later(at, at, self.pause_limit())));

@@ -17,7 +17,7 @@ pub struct Judgement {
     pub how: How,
     /// The rule that decided; for a finding the one whose smallest change would explain it.
     pub rule: RuleId,
-    /// Other rules that would explain a finding by just as small a change.
+    /// Other rules that would explain a finding by just as small a change, and envelope rules broken by the same event.
     pub also: RuleSet,
     /// What the window counts from, where that is known.
     pub anchor: Option<Anchor>,

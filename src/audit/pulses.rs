@@ -60,6 +60,7 @@ impl<const H: usize> Auditor<H> {
         if self.expected(at).is_some() {
             let sent = Hypothesis { why: Some(Hint::UnknownState), ..Hypothesis::paced(at) };
             self.states.add(sent);
+            self.envelope.excuse(at);
         }
         self.scores.broken(RuleId::En4, None);
         self.counts.decided = self.counts.decided.saturating_add(1);

@@ -38,11 +38,6 @@ impl Scores {
         }
     }
 
-    /// How often any rule was broken.
-    pub(super) fn broken_in_all(&self) -> u32 {
-        self.rules.iter().fold(0, |sum: u32, tally| sum.saturating_add(tally.broken))
-    }
-
     pub(super) fn held(&mut self, rule: RuleId, measure: Option<Measure>) {
         self.change(rule, measure, |tally| tally.held = tally.held.saturating_add(1));
     }

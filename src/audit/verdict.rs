@@ -24,7 +24,7 @@ pub struct Findings {
     pub judged: bool,
     /// False if a canary ran and its planted fault was not caught.
     pub canary_caught: bool,
-    /// How often any rule was broken.
+    /// Findings: how often something was found broken.
     pub broken: u32,
     /// Windows and signals about which everything could be told.
     pub decided: u64,
