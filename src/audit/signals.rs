@@ -67,11 +67,11 @@ impl<const H: usize> Auditor<H> {
                 if self.states.add(Hypothesis { why: Some(hint), ..sensed }) {
                     self.counts.loosened = self.counts.loosened.saturating_add(1);
                 }
-                self.cannot_tell(&sensed, hint);
+                self.cannot_tell(&sensed, alone, hint);
             }
             (None, Some(_)) if tied => {
                 let at = Hypothesis { lo: detected, hi: detected, ..Hypothesis::paced(detected) };
-                self.cannot_tell(&at, Hint::NearTie);
+                self.cannot_tell(&at, None, Hint::NearTie);
             }
             (None, Some(_)) => {
                 if !self.windows.may_see(signal.peak) {
@@ -119,7 +119,8 @@ impl<const H: usize> Auditor<H> {
         });
     }
 
-    fn cannot_tell(&mut self, at: &Hypothesis, hint: Hint) {
+    /// Whether the signal ended the window cannot be told; the window is given if there was one only.
+    fn cannot_tell(&mut self, at: &Hypothesis, before: Option<Hypothesis>, hint: Hint) {
         let rule = match hint {
             Hint::NearThreshold => RuleId::Se1,
             Hint::AtEdge | Hint::Straddles => RuleId::Rf2,
@@ -130,6 +131,7 @@ impl<const H: usize> Auditor<H> {
         }
         self.counts.undecided = self.counts.undecided.saturating_add(1);
         let judgement = self.judgement(at.hi, Outcome::Undecided, How::Withheld, rule);
+        let judgement = before.map_or(judgement, |state| self.with_window(judgement, &state));
         self.say(Judgement { hint: Some(hint), ..judgement });
     }
 }

@@ -82,10 +82,10 @@ impl Bounds {
         }
     }
 
-    /// Where a signal's sense lies in a cycle; none if it begins before it.
+    /// Where a signal's sense lies in a cycle; none if it lies before it, or is what the cycle begins with.
     pub(super) fn offset(&self, onset: Instant, anchor: Instant) -> Option<u64> {
         let sense = onset.saturating_add(Span::from_micros(self.delay));
-        sense.since(anchor).map(Span::as_micros)
+        sense.since(anchor).map(Span::as_micros).filter(|offset| *offset > 0)
     }
 
     /// Beginning, end and band of a window.

@@ -138,8 +138,15 @@ impl Coverage {
         if judgement.rule.tier() == Tier::Envelope || judgement.channel != self.channel {
             return;
         }
+        let after = judgement.anchor.and_then(|anchor| match anchor.kind {
+            AnchorKind::Sensed => Some(After::Sense),
+            AnchorKind::Paced if self.stimuli.captured(anchor.latest) => Some(After::CapturedPulse),
+            AnchorKind::Paced => Some(After::LostPulse),
+            AnchorKind::Start => None,
+        });
+        let cycle = after.zip(judgement.anchor.map(|anchor| anchor.latest));
         if judgement.outcome == Outcome::Undecided && judgement.how == How::Withheld {
-            self.stimuli.could_not_tell(judgement.at);
+            self.stimuli.could_not_tell(judgement.at, cycle);
             return;
         }
         let ends = match (judgement.seen, judgement.window) {
@@ -147,24 +154,15 @@ impl Coverage {
             (None, Some(window)) if judgement.how == How::Missing => window.latest,
             (None, _) => judgement.at,
         };
-        if let Some(anchor) = judgement.anchor {
-            let after = match anchor.kind {
-                AnchorKind::Sensed => Some(After::Sense),
-                AnchorKind::Paced if self.stimuli.captured(anchor.latest) => Some(After::CapturedPulse),
-                AnchorKind::Paced => Some(After::LostPulse),
-                AnchorKind::Start => None,
-            };
-            let decided = judgement.outcome != Outcome::Undecided;
-            let anchor = anchor.latest;
-            if decided {
-                self.count_whole(WholeRun::Wrap, anchor.as_micros() >> 32 != ends.as_micros() >> 32);
-                self.count_whole(WholeRun::FirstCycle, after.is_none());
-            }
-            if let Some(after) = after {
-                let paced = judgement.how != How::Withheld;
-                self.place(&Cycle { after, anchor, ends, paced, decided });
-                self.before = paced.then_some((after, anchor));
-            }
+        let decided = judgement.outcome != Outcome::Undecided;
+        if let Some(anchor) = judgement.anchor.filter(|_| decided) {
+            self.count_whole(WholeRun::Wrap, anchor.latest.as_micros() >> 32 != ends.as_micros() >> 32);
+            self.count_whole(WholeRun::FirstCycle, after.is_none());
+        }
+        if let Some((after, anchor)) = cycle {
+            let paced = judgement.how != How::Withheld;
+            self.place(&Cycle { after, anchor, ends, paced, decided });
+            self.before = paced.then_some((after, anchor));
         }
         self.stimuli.forget(ends);
     }
@@ -177,26 +175,30 @@ impl Coverage {
 
     fn place(&mut self, cycle: &Cycle) {
         let bounds = self.bounds;
-        let before = self.before;
         for signal in self.stimuli.iter().filter(|signal| signal.onset <= cycle.ends) {
-            let decided = cycle.decided && !signal.undecided;
-            if let Some(offset) = bounds.offset(signal.onset, cycle.anchor) {
-                for (place, after, stretch) in table::rows_of(self.mode, bounds.hysteresis) {
-                    let row = bounds.row(after, stretch);
-                    if after == cycle.after && row.0 <= offset && offset < row.1 {
-                        let inside = offset.saturating_sub(row.0) > row.2 && row.1.saturating_sub(offset) > row.2;
-                        let to = cycle.anchor.saturating_add(Span::from_micros(row.1.saturating_add(row.2)));
-                        hit(&mut self.cells, place, signal, decided && inside, inside && signal.end > to);
+            let decided = cycle.decided && !signal.is_undecided();
+            // The signal this cycle began with ended the one before, as is known only now.
+            let (after, anchor) = match signal.may_have_ended {
+                Some(Some(before)) if bounds.offset(signal.onset, cycle.anchor).is_none() => before,
+                _ => (cycle.after, cycle.anchor),
+            };
+            if let Some(offset) = bounds.offset(signal.onset, anchor) {
+                for (place, of, stretch) in table::rows_of(self.mode, bounds.hysteresis).filter(|(_, of, _)| *of == after) {
+                    let (from, to, band) = bounds.row(of, stretch);
+                    if from <= offset && offset < to {
+                        let inside = offset.saturating_sub(from) > band && to.saturating_sub(offset) > band;
+                        let outlasts = signal.end > anchor.saturating_add(Span::from_micros(to.saturating_add(band)));
+                        hit(&mut self.cells, place, signal, decided && inside, inside && outlasts);
                         if let Some((yes, no)) = self.decided.get_mut(place) {
                             *if decided { yes } else { no } = if decided { yes.saturating_add(1) } else { no.saturating_add(1) };
                         }
                     }
                 }
                 if decided {
-                    try_edges(&mut self.edges, &bounds, cycle.after, offset, signal.column, false);
+                    try_edges(&mut self.edges, &bounds, after, offset, signal.column, false);
                 }
             }
-            if let Some((after, anchor)) = before
+            if let Some((after, anchor)) = self.before
                 && decided
                 && let Some(offset) = bounds.offset(signal.onset, anchor)
             {

@@ -1,7 +1,7 @@
 //! What was tried: signals and pulses since the last judged window, with what stood behind them.
 
 use super::origin::Origins;
-use super::table::Column;
+use super::table::{After, Column};
 use crate::base::{Cause, CauseKind, Channel, Instant, Kind, Record, Signal, Span};
 use heapless::Deque;
 
@@ -18,7 +18,16 @@ pub(super) struct Stimulus {
     pub(super) column: Column,
     /// Another one began within 1 ms before it.
     pub(super) second: bool,
-    pub(super) undecided: bool,
+    /// Whether it was sensed could not be told; it may have ended this cycle.
+    pub(super) may_have_ended: Option<Option<(After, Instant)>>,
+}
+
+impl Stimulus {
+    /// True if what it did could not be told although its peak leaves no doubt. Of one near the threshold no more is asked than that
+    /// the window's own verdict is decided.
+    pub(super) fn is_undecided(&self) -> bool {
+        self.may_have_ended.is_some() && self.column != Column::NearThreshold
+    }
 }
 
 #[derive(Debug, Clone, Copy)]
@@ -97,7 +106,7 @@ impl Stimuli {
             let _ = self.signals.pop_front();
         }
         let end = onset.saturating_add(signal.width);
-        let _ = self.signals.push_back(Stimulus { onset, end, column, second, undecided: false });
+        let _ = self.signals.push_back(Stimulus { onset, end, column, second, may_have_ended: None });
     }
 
     /// Whether the pulse at this instant captured; counted as captured, and flagged, where no record tells.
@@ -107,10 +116,10 @@ impl Stimuli {
         known.unwrap_or(true)
     }
 
-    /// Of the latest signal up to here it could not be told what it did.
-    pub(super) fn could_not_tell(&mut self, until: Instant) {
+    /// Of the latest signal up to here it could not be told whether it ended this cycle.
+    pub(super) fn could_not_tell(&mut self, until: Instant, cycle: Option<(After, Instant)>) {
         if let Some(last) = self.signals.iter_mut().filter(|signal| signal.onset <= until).last() {
-            last.undecided = true;
+            last.may_have_ended = Some(cycle);
         }
     }
 
