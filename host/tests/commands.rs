@@ -96,7 +96,7 @@ fn out_is_filled_and_only_our_own_files_are_replaced() {
     let mut files: Vec<String> =
         fs::read_dir(&out).unwrap().map(|entry| entry.unwrap().file_name().into_string().unwrap()).collect();
     files.sort_unstable();
-    assert_eq!(files, ["log.csv", "log.jsonl", "summary.json"]);
+    assert_eq!(files, ["log.csv", "log.jsonl", "report.html", "summary.json"]);
     assert_eq!(fs::read_dir(out.parent().unwrap()).unwrap().count(), 1, "nothing is left beside it");
 
     fs::write(out.join("notes.txt"), "mine").unwrap();
@@ -106,7 +106,7 @@ fn out_is_filled_and_only_our_own_files_are_replaced() {
     assert_eq!(fs::read_to_string(out.join("notes.txt")).unwrap(), "mine");
     assert!(fs::read_to_string(out.join("log.csv")).unwrap().starts_with("at_us,what,where,cause,"));
     assert_eq!(json(&fs::read_to_string(out.join("summary.json")).unwrap())["verdict"], "holds");
-    assert_eq!(fs::read_dir(&out).unwrap().count(), 4, "nothing is left inside it");
+    assert_eq!(fs::read_dir(&out).unwrap().count(), 5, "nothing is left inside it");
 }
 
 #[cfg(unix)]

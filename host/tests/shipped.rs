@@ -42,3 +42,27 @@ fn the_logs_are_pinned() {
         insta::assert_snapshot!(name, text);
     }
 }
+
+/// Every key and column that a user may need is in the reference beside the scenarios.
+#[test]
+fn the_reference_is_complete() {
+    let reference = include_str!("../../examples/scenarios/README.md");
+    let words: Vec<&str> = reference.split(|c: char| !c.is_alphanumeric() && c != '_').collect();
+    for name in phase4_host::scenario::key_names().chain(phase4_host::log_file::COLUMNS) {
+        assert!(words.contains(&name), "{name}");
+    }
+    for scenario in SCENARIOS {
+        assert!(reference.contains(&format!("`{scenario}.toml`")), "{scenario}");
+    }
+}
+
+/// A scenario that is printed anywhere can be run.
+#[test]
+fn printed_scenarios_are_valid() {
+    for page in [include_str!("../../README.md"), include_str!("../../examples/scenarios/README.md")] {
+        for block in page.split("```toml\n").skip(1) {
+            let (text, _) = block.split_once("```").unwrap();
+            common::parsed(text);
+        }
+    }
+}

@@ -7,6 +7,7 @@ use crate::judge;
 use crate::log_file::{self, Usual};
 use crate::output::{Folder, Summary, sentence};
 use crate::refusal::{Complaint, Refusal};
+use crate::report;
 use crate::run::{self, Failed, Finished, Order, names};
 use crate::run_data::{RunData, Verdict};
 use crate::scenario::Scenario;
@@ -59,7 +60,7 @@ pub(super) fn run(args: &Run) -> Result<Answer, Refusal> {
     let told = run_data(&scenario, Outcome { command, tally, hash, records, judged }, RuleSet::EMPTY).map_err(refuse)?;
     let summary = Summary::of(&told).to_json();
     if let Some(folder) = folder {
-        folder.put_in_place(&summary).map_err(refuse)?;
+        folder.put_in_place(&summary, &report::page(&told)).map_err(refuse)?;
     }
     Ok(answer(&told, summary, args.json))
 }

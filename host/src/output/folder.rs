@@ -10,10 +10,11 @@ use std::path::{Path, PathBuf};
 use tempfile::TempDir;
 
 /// The files of a run, in the order in which they are put in place: the summary last, so that it never speaks of older files.
-const FILES: [&str; 3] = [LOG_JSON, LOG_CSV, SUMMARY];
+const FILES: [&str; 4] = [LOG_JSON, LOG_CSV, REPORT, SUMMARY];
 const SUMMARY: &str = "summary.json";
 const LOG_JSON: &str = "log.jsonl";
 const LOG_CSV: &str = "log.csv";
+const REPORT: &str = "report.html";
 
 /// An output folder that is being filled. Dropped without [`Folder::put_in_place`], it leaves nothing behind.
 #[derive(Debug)]
@@ -77,11 +78,12 @@ impl Folder {
     ///
     /// # Errors
     /// What the file system refuses. Until the files are moved nothing has changed.
-    pub fn put_in_place(self, summary: &str) -> Result<(), FolderError> {
+    pub fn put_in_place(self, summary: &str, report: &str) -> Result<(), FolderError> {
         let Self { target, beside, json, csv } = self;
         let place = || -> io::Result<()> {
             json.finish()?.into_inner().map_err(io::IntoInnerError::into_error)?.sync_all()?;
             csv.finish()?.sync_all()?;
+            write(&beside.path().join(REPORT), report)?;
             write(&beside.path().join(SUMMARY), summary)?;
             if target.is_dir() {
                 for file in FILES {

@@ -23,6 +23,7 @@ pub use fault::describe as describe_fault;
 pub use heart::{Focus, HeartPart, MOST_FOCI, PlainAnatomy};
 pub use require::Required;
 pub use scan::Wrong;
+pub use schema::key_names;
 pub use steps::{MOST_STEPS, StepsPart};
 
 use crate::refusal::{Complaint, Refusal, Source};

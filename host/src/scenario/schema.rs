@@ -194,6 +194,31 @@ pub(super) static STEP: Schema = Schema {
     ],
 };
 
+static ALL: [&Schema; 17] = [
+    &FILE,
+    &SCENARIO,
+    &RUN,
+    &HEART,
+    &REPLAY,
+    &PREMATURE,
+    &SITE,
+    &TRACT,
+    &WAY,
+    &LEADS,
+    &LEAD,
+    &DEVICE,
+    &FAULT,
+    &AUDIT,
+    &TOLERANCES,
+    &TOLERANCE,
+    &STEP,
+];
+
+/// The name of every key there is, table by table.
+pub fn key_names() -> impl Iterator<Item = &'static str> {
+    ALL.iter().flat_map(|schema| schema.keys.iter().map(|key| key.name))
+}
+
 impl Holds {
     /// What is expected, in words.
     pub(super) fn expected(self) -> String {
