@@ -123,24 +123,42 @@ fn edges(coverage: &Coverage) -> Markup {
             columns.push(&edge.column);
         }
     }
-    let same_row = |one: &CoverageEdge, next: &CoverageEdge| (&one.anchor, &one.edge) == (&next.anchor, &next.edge);
+    let mut anchors: Vec<&str> = Vec::new();
+    for edge in &coverage.edges {
+        if !anchors.contains(&edge.anchor.as_str()) {
+            anchors.push(&edge.anchor);
+        }
+    }
     html! {
         div {
             table.cov {
                 caption { "Edges, each from both sides" }
                 thead { tr { th scope="col" { span.vh { "edge" } } @for column in &columns { th scope="col" { (short(column, 24)) } } } }
-                tbody { @for group in coverage.edges.chunk_by(same_row).take(MOST_ROWS) {
-                    @if let Some(first) = group.first() {
-                        tr {
-                            th.st1 scope="row" {
-                                (short(&first.edge, 40)) span.zero { ", " (ms(first.at)) " " (short(&first.anchor, 40)) }
-                            }
-                            @for column in &columns {
-                                td { @if let Some(edge) = group.iter().find(|edge| edge.column == **column) { (edge_picture(edge)) } }
-                            }
-                        }
-                    }
-                } }
+                tbody { @for anchor in anchors.iter().take(MOST_ROWS) { (edge_rows(coverage, anchor, &columns)) } }
+            }
+        }
+    }
+}
+
+fn edge_rows(coverage: &Coverage, anchor: &str, columns: &[&str]) -> Markup {
+    let edges: Vec<&CoverageEdge> = coverage.edges.iter().filter(|edge| edge.anchor == anchor).take(MOST_ROWS).collect();
+    let mut names: Vec<&str> = Vec::new();
+    for edge in &edges {
+        if !names.contains(&edge.edge.as_str()) {
+            names.push(&edge.edge);
+        }
+    }
+    html! {
+        tr { th scope="rowgroup" colspan=(columns.len() + 1) { (short(anchor, 60)) } }
+        @for name in names {
+            tr {
+                th.st1 scope="row" {
+                    (short(name, 40))
+                    @if let Some(edge) = edges.iter().find(|edge| edge.edge == name) { span.zero { ", " (ms(edge.at)) } }
+                }
+                @for column in columns {
+                    td { @if let Some(edge) = edges.iter().find(|edge| edge.edge == name && edge.column == *column) { (edge_picture(edge)) } }
+                }
             }
         }
     }

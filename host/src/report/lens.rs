@@ -92,7 +92,8 @@ fn draw(facts: &Facts<'_>, case: &Case, window: Window, seen: Option<i64>) -> Sv
         Some(seen) => mark(&mut svg, case, x(seen as f64), seen, (left, right)),
         None => svg.text("tb halo", (x(0.0), 79.0), Anchor::Middle, "no pulse seen"),
     }
-    allowed(&mut svg, (low, high), (left, right), seen.map(|seen| x(seen as f64)));
+    let inside = (x(low as f64 + guard), x(high as f64 - guard));
+    allowed(&mut svg, (low, high), inside, seen.map(|seen| x(seen as f64)));
     svg
 }
 

@@ -8,7 +8,7 @@ use super::sign::{Bar, State, bar, sign_and_word};
 use super::text::capital;
 use crate::run_data::RunData;
 use maud::{Markup, html};
-use phase4::audit::{Decision, Outcome, RuleId, Score, Tolerance};
+use phase4::audit::{Decision, How, Outcome, RuleId, Score, Tolerance};
 use phase4::base::{Deviation, Span};
 
 /// How a rule stands.
@@ -126,7 +126,12 @@ fn why_untried(rule: RuleId, run: &RunData) -> String {
         RuleId::Se1 | RuleId::In1 => "No signal that must be seen came in the alert window.",
         RuleId::Se2 => "No signal was small enough.",
         RuleId::Hy1 => "No interval began with a seen beat.",
-        RuleId::Hy2 | RuleId::Lr1 | RuleId::Lr2 | RuleId::Cm1 | RuleId::En1 => "No pulse was due.",
+        RuleId::Hy2 | RuleId::Lr1 | RuleId::Lr2 | RuleId::Cm1 if run.judgements.iter().any(|case| case.how != How::Withheld) => {
+            "Every pulse that was judged came under another rule."
+        }
+        RuleId::Hy2 | RuleId::Lr1 | RuleId::Lr2 | RuleId::Cm1 => "No pulse was due.",
+        RuleId::En1 => "No two pulses followed one another.",
+        RuleId::En4 => "No pulse left.",
         RuleId::En3 => "No pulse came near a signal that must be seen.",
         _ => "This run gave no occasion.",
     };
@@ -143,9 +148,10 @@ fn shared(facts: &Facts<'_>, rule: RuleId) -> Option<String> {
     let held: Vec<&Case> =
         facts.cases.iter().filter(|case| case.judgement.outcome == Outcome::Held && case.is_of_a_pulse()).collect();
     let special = super::wording::shared_cause(&broken, &held);
-    let sorts = special
-        .into_iter()
-        .chain([Since::Sensed, Since::Paced, Since::Start].into_iter().filter(|since| Some(*since) != special));
+    // Where pulse and start together are the cause, each of them alone says nothing more.
+    let anchors: &[Since] =
+        if special == Some(Since::Unsensed) { &[Since::Sensed] } else { &[Since::Sensed, Since::Paced, Since::Start] };
+    let sorts = special.into_iter().chain(anchors.iter().copied().filter(|since| Some(*since) != special));
     let parts: Vec<String> = sorts
         .filter_map(|since| {
             let of = |cases: &[&Case]| cases.iter().filter(|case| since.is_of(case)).count() as u64;

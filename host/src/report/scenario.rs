@@ -4,6 +4,7 @@ use super::facts::Facts;
 use super::number::count;
 use super::page::Section;
 use super::text::{clean, short};
+use crate::run_data::StepText;
 use maud::{Markup, html};
 
 /// Lines beyond this one are counted and left out.
@@ -29,7 +30,7 @@ fn body(facts: &Facts<'_>) -> Markup {
         if bytes > MOST_BYTES {
             break;
         }
-        lines.push(line(facts, place + 1, &text));
+        lines.push(line(facts, &all, place + 1, &text));
     }
     let rest = all.len() - lines.len();
     html! {
@@ -38,8 +39,13 @@ fn body(facts: &Facts<'_>) -> Markup {
     }
 }
 
-fn line(facts: &Facts<'_>, number: usize, text: &str) -> Markup {
-    let step = facts.run.steps.iter().position(|step| step.line == number).map(|place| place + 1);
+fn line(facts: &Facts<'_>, all: &[&str], number: usize, text: &str) -> Markup {
+    // A step is known by the line of its first key; the number belongs to the heading above it, where there is one.
+    let heads = |step: &StepText| {
+        let heading = step.line.checked_sub(2).and_then(|above| all.get(above)).is_some_and(|above| above.trim() == "[[step]]");
+        step.line - usize::from(heading) == number
+    };
+    let step = facts.run.steps.iter().position(heads).map(|place| place + 1);
     let comment = text.find('#').filter(|_| text.trim_start().starts_with('#'));
     html! {
         span id=[step.map(|step| format!("step{step}"))] {

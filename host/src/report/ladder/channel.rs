@@ -45,7 +45,12 @@ fn draw_signal(canvas: &mut Canvas<'_>, block: &Block, signal: &SignalFact) {
         return;
     }
     let near = block.lane_near();
-    let must = matches!(signal.sight, Sight::Seen | Sight::Unsensed | Sight::Either);
+    let must = match signal.sight {
+        Sight::Seen | Sight::Either => true,
+        // Without a device it is one that a device could see.
+        Sight::Unsensed => !canvas.facts.is_judged(),
+        Sight::Blanked | Sight::Refractory | Sight::Small => false,
+    };
     // A signal that changes nothing does not reach the lane and has no triangle.
     let (top, bottom) = (block.off(1.0), if must { near } else { near - 12.0 * block.down });
     canvas.svg.line(if signal.bare { "seen bare" } else { "seen" }, (x, top), (x, bottom));
@@ -114,7 +119,7 @@ fn windows(canvas: &mut Canvas<'_>, block: &Block) {
                 ("alert", settings.refractory, interval.ceil()),
             ]
         } else {
-            vec![("refr", Span::ZERO, interval.ceil())]
+            vec![("refr all", Span::ZERO, interval.ceil())]
         };
         for (class, from, to) in spans {
             bar(canvas, block, class, cycle, cycle.from.saturating_add(from), cycle.from.saturating_add(to));

@@ -152,7 +152,7 @@ fn targets(facts: &Facts<'_>) -> Vec<(Reason, Instant, Instant, Instant)> {
     let out_of_turn = |kind| matches!(kind, CauseKind::Focus | CauseKind::Script);
     let top = facts.top_site();
     let ectopic = facts.heart.activations.iter().find(|beat| out_of_turn(beat.cause.kind) && beat.site != top);
-    let first_pulse = || closest.map(|found| case(Reason::Closest, found));
+    let first_pulse = || closest.map(|found| case(Reason::Beginning, found));
     let ectopic = ectopic.map(|beat| moment(Reason::Ectopic, beat.at));
     vec![ectopic.or_else(first_pulse).unwrap_or(moment(Reason::Beginning, facts.run.start))]
 }

@@ -104,7 +104,9 @@ fn draw_blocked(canvas: &mut Canvas<'_>, tier: &Tier, wave: &Wave, (x, entry): (
     let there = x + part * delay.as_micros() as f64 * canvas.frame.per_ms() / 1_000.0;
     canvas.line("hid", (x, entry), (there, end));
     stop(canvas, there, end);
-    canvas.name("blocked", there, end - 4.0, 10.0);
+    if canvas.has_room(there, 6.0) {
+        canvas.name("blocked", there, end - 4.0, 10.0);
+    }
 }
 
 fn stop(canvas: &mut Canvas<'_>, x: f64, y: f64) {

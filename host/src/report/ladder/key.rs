@@ -3,7 +3,7 @@
 use maud::{Markup, PreEscaped, html};
 
 /// Marks with the class that shows them to be there, their picture, and words.
-const MARKS: [(&str, &str, &str, &str); 13] = [
+const MARKS: [(&str, &str, &str, &str); 14] = [
     ("\"wave\"", "26", r#"<path class="wave" d="M6 1L18 15"/>"#, "conducted; the slope is the delay"),
     (
         "\"hid\"",
@@ -35,6 +35,7 @@ const MARKS: [(&str, &str, &str, &str); 13] = [
         r#"<path class="blank" d="M0 2h20v12h-20z"/><path class="refr" d="M20 2h26v12h-26z"/><path class="alert" d="M46 2h30v12h-30z"/>"#,
         "blanking, refractory, alert",
     ),
+    ("\"refr all\"", "26", r#"<path class="refr" d="M0 2h26v12h-26z"/>"#, "nothing is sensed"),
     ("\"late\"", "16", r#"<path class="late" d="M0 2h12v12h-12z"/>"#, "overdue"),
     (
         "\"lensf\"",

@@ -140,8 +140,9 @@ impl Layout {
         }
         for block in self.blocks() {
             let letter = if block.channel == Channel::Atrial { "A" } else { "V" };
-            svg.text("bold", (10.0, block.off(29.0) - 2.0), Anchor::Start, &format!("{letter} signals,"));
-            svg.text("bold", (10.0, block.off(29.0) + 13.0), Anchor::Start, "pulses");
+            let middle = if block.down > 0.0 { block.off(29.0) } else { block.off(40.0) };
+            svg.text("bold", (10.0, middle - 2.0), Anchor::Start, &format!("{letter} signals,"));
+            svg.text("bold", (10.0, middle + 13.0), Anchor::Start, "pulses");
             if block.judged {
                 svg.text("bold", (10.0, block.lane_top() + 11.0), Anchor::Start, &format!("{letter} windows"));
                 let middle = block.beyond(49.0);

@@ -14,7 +14,7 @@ pub(super) fn pins(facts: &Facts<'_>, width: f64, class: &str) -> Markup {
     let at = |number: usize| facts.finding(number).map(|case| share(facts, case.place) * width);
     html! {
         @for (first, last) in merged(facts.findings.len(), at) {
-            @if let Some(x) = at(first) {
+            @if let Some(x) = middle((first, last), at) {
                 a class={ "pin " (class) } style={ "left:" (format!("{:.2}", x / width * 100.0)) "%" } href={ "#F" (link(facts, first, last)) } {
                     span.vh { "finding " }
                     (first) @if last > first { "–" (last) }
@@ -52,7 +52,12 @@ fn merged(findings: usize, at: impl Fn(usize) -> Option<f64>) -> Vec<(usize, usi
 
 fn touch(one: (usize, usize), next: (usize, usize), at: impl Fn(usize) -> Option<f64>) -> bool {
     let room = APART.max((figures(one) + figures(next)) * FIGURE / 2.0 + 5.0);
-    matches!((at(one.0), at(next.0)), (Some(left), Some(right)) if right - left < room)
+    matches!((middle(one, &at), middle(next, &at)), (Some(left), Some(right)) if right - left < room)
+}
+
+/// Where a pin stands: in the middle of its findings.
+fn middle((first, last): (usize, usize), at: impl Fn(usize) -> Option<f64>) -> Option<f64> {
+    Some((at(first)? + at(last)?) / 2.0)
 }
 
 /// How many figures stand under a pin.

@@ -94,7 +94,7 @@ fn broken(svg: &mut Svg, facts: &Facts<'_>) {
         let _ = write!(path, "M{place} 32V61");
         path
     });
-    svg.raw_path("ns bad", &path);
+    svg.raw_path("ns found", &path);
 }
 
 /// Undecided places in per cent: left end and width, each as written, neighbours joined.

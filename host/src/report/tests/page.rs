@@ -134,7 +134,7 @@ fn a_rule_that_was_not_tried_shows_no_figure() {
 fn only_a_broken_run_has_the_colour_of_a_finding() {
     let marks = |page: &str| {
         let used = page.split("</defs>").nth(1).unwrap_or_default().to_owned();
-        ["class=\"dotb\"", "class=\"late\"", "class=\"tb", "#g-broken", "class=\"w\"", "ns bad"]
+        ["class=\"dotb\"", "class=\"late\"", "class=\"tb", "#g-broken", "class=\"w\"", "ns found"]
             .map(|mark| used.matches(mark).count())
     };
     assert_eq!(marks(&page(&shipped("recorded.toml"))), [0; 6]);

@@ -37,20 +37,28 @@ fn is_held_pulse(case: &Case) -> bool {
     case.judgement.outcome == Outcome::Held && case.is_of_a_pulse()
 }
 
-/// What the device does, where all broken cases are of one kind.
+/// What the device does, where all broken cases are of one kind, or on one side.
 fn deed(broken: &[&Case]) -> Option<String> {
-    let how = broken.first()?.judgement.how;
-    if !broken.iter().all(|case| case.judgement.how == how) {
-        return None;
-    }
-    let sizes = || broken.iter().map(|case| case.judgement.deviation.map(Deviation::size));
-    let sized = |way| Some(format!("paces {} {way}", range(sizes().collect::<Option<Vec<_>>>()?.into_iter())?));
-    match how {
-        How::Late => sized("late"),
-        How::Early => sized("early"),
-        How::Missing => Some("leaves out a pulse that is due".to_owned()),
-        How::Unexpected => Some("paces where no pulse is due".to_owned()),
-        How::OnTime | How::Withheld => None,
+    let all = |kinds: &[How]| !broken.is_empty() && broken.iter().all(|case| kinds.contains(&case.judgement.how));
+    let sized = |way| {
+        let sizes = broken.iter().filter(|case| case.judgement.how != How::Missing).map(|case| case.judgement.deviation);
+        let sizes = sizes.map(|deviation| deviation.map(Deviation::size)).collect::<Option<Vec<_>>>()?;
+        Some(format!("paces {} {way}", range(sizes.into_iter())?))
+    };
+    if all(&[How::Late]) {
+        sized("late")
+    } else if all(&[How::Early]) {
+        sized("early")
+    } else if all(&[How::Missing]) {
+        Some("leaves out a pulse that is due".to_owned())
+    } else if all(&[How::Unexpected]) {
+        Some("paces where no pulse is due".to_owned())
+    } else if all(&[How::Late, How::Missing]) {
+        sized("late or not at all")
+    } else if all(&[How::Early, How::Unexpected]) {
+        Some("paces before a pulse is due".to_owned())
+    } else {
+        None
     }
 }
 
