@@ -27,6 +27,7 @@ crate::entries! { RULES:
     AuditSettings::with_tolerance as fn(_, _);
     AuditSettings::with_uncertainty as fn(_, _, _);
     AuditSettings::with_limits as fn(_, _);
+    AuditSettings::sensitivity_limits as fn(_, _);
     Verdict::of as fn(_);
     Verdict::word as fn(_);
     Verdict::exit_code as fn(_);
@@ -60,6 +61,8 @@ fn lines(coverage: &Coverage) -> (usize, usize, usize, usize) {
 
 crate::entries! { COVERAGE:
     Coverage::new as fn(_, _);
+    Coverage::know_tract as fn(_, _, _, _);
+    Coverage::know_rhythm as fn(_, _);
     Coverage::record as fn(_, _);
     Coverage::judged as fn(_, _);
     Coverage::need as fn(_, _);
