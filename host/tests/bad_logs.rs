@@ -1,4 +1,5 @@
 //! What a user is told who gives `judge` something that is not a log of one run: with the line, and without a panic.
+#![allow(clippy::panic, clippy::unwrap_used, clippy::indexing_slicing, reason = "a test may")]
 
 mod common;
 

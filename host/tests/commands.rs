@@ -1,4 +1,5 @@
 //! The command as a user meets it: what it prints, what it writes, and with which code it ends.
+#![allow(clippy::panic, clippy::unwrap_used, clippy::indexing_slicing, reason = "a test may")]
 
 mod common;
 

@@ -21,7 +21,7 @@ macro_rules! images {
     ($($name:ident $file:literal;)*) => {
         $(#[test]
         fn $name() {
-            #[allow(missing_docs, unreachable_pub, dead_code, unused_imports, reason = "written by a program, for an image")]
+            #[allow(missing_docs, unreachable_pub, dead_code, unused_imports, clippy::panic, reason = "written by a program, for an image")]
             mod image {
                 include!(concat!("image/", $file, ".rs"));
             }

@@ -1,4 +1,5 @@
 //! What a user is told who writes a scenario wrongly: every sort of mistake once, with the whole message as it is printed.
+#![allow(clippy::panic, clippy::unwrap_used, clippy::indexing_slicing, reason = "a test may")]
 
 use phase4_host::refusal::Source;
 use phase4_host::scenario::Scenario;

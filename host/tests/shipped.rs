@@ -1,5 +1,6 @@
 //! The six shipped scenarios, pinned: hash, counts, scores and the first lines of each log. A change here is a change of what every
 //! user sees, and belongs into the changelog.
+#![allow(clippy::panic, clippy::unwrap_used, clippy::indexing_slicing, reason = "a test may")]
 
 mod common;
 

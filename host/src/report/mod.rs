@@ -1,6 +1,6 @@
 //! The report: one self-contained page that says what happened, how it was judged and what was not looked at.
 //!
-//! Everything on it follows from a [`RunData`](crate::run_data::RunData) and nothing else, so that the same run gives the same page,
+//! Everything on it follows from a [`RunData`] and nothing else, so that the same run gives the same page,
 //! byte for byte. Black comes from the heart's records; blue and brackets come from what the bench itself sees and from the
 //! program; vermilion marks a broken rule and nothing else.
 

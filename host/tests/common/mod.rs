@@ -1,5 +1,6 @@
 //! What the tests of the host share.
 #![allow(dead_code, reason = "each test uses its part")]
+#![allow(clippy::panic, clippy::unwrap_used, reason = "a test may")]
 
 use phase4::audit::RuleSet;
 use phase4_host::assemble::{Outcome, run_data};
