@@ -163,7 +163,10 @@ impl<const H: usize> Auditor<H> {
             }
             self.finish(record.at);
         }
-        self.settle(now);
+        if !self.ended {
+            self.wake = self.next_step();
+            self.settle(now);
+        }
     }
 
     /// The next judgement settled at or before `now`, if there is one.
@@ -254,16 +257,25 @@ impl<const H: usize> Auditor<H> {
         }
         let signal = Shown { at: now, peak: signal.peak.0, width: short(signal.width) };
         self.history.push(Event::Signal(signal));
+        let waiting = Waiting { signal, tied: false };
+        if self.signals.is_empty() && self.windows.settles(now) <= now {
+            self.settle_signal(waiting, now, false);
+            return;
+        }
         if self.signals.is_full() {
             // Settled before its time: it may have come after a pulse not yet looked at.
-            self.settle_signal(now, true);
+            self.settle_first(now, true);
         }
-        let _ = self.signals.push_back(Waiting { signal, tied: false });
+        let _ = self.signals.push_back(waiting);
     }
 
     fn take_pulse(&mut self, channel: Channel, now: Micros) {
         if self.paces != Some(channel) {
             self.judge_stray(channel, now);
+            return;
+        }
+        if self.windows.uncertainty == 0 {
+            self.judge_pulse(now);
             return;
         }
         if self.pulses.is_full()
@@ -305,17 +317,18 @@ impl<const H: usize> Auditor<H> {
 
     /// Does all that is due at or before `now`.
     fn settle(&mut self, now: Micros) {
-        self.wake = self.next_step();
-        while self.wake.is_some_and(|at| at <= now) && !self.ended {
-            self.step(now);
+        while let Some(at) = self.wake.filter(|at| *at <= now && !self.ended) {
+            self.step(at);
             self.wake = self.next_step();
         }
     }
 
     /// The moment of the next thing to be settled.
     fn next_step(&self) -> Option<Micros> {
-        let times = [self.signal_due(), self.pulse_due(), self.silence_due(), self.pause_due()];
-        times.into_iter().flatten().min().filter(|at| *at < FOREVER)
+        let earlier = |least: Micros, due: Option<Micros>| due.map_or(least, |at| at.min(least));
+        let least = earlier(earlier(FOREVER, self.signal_due()), self.pulse_due());
+        let least = earlier(earlier(least, self.silence_due()), self.pause_due());
+        (least < FOREVER).then_some(least)
     }
 
     fn signal_due(&self) -> Option<Micros> {
@@ -342,14 +355,13 @@ impl<const H: usize> Auditor<H> {
         self.envelope.pause_ends().map(|end| end.saturating_add(self.windows.uncertainty))
     }
 
-    /// Does the one thing due at or before `now`: at the same moment silence first, which settles the signals that bear on it, then
+    /// Does the one thing due now: at the same moment silence first, which settles the signals that bear on it, then
     /// signals, then pulses. A pulse at the moment of silence is the first that comes too late.
-    fn step(&mut self, now: Micros) {
-        let Some(at) = self.wake.filter(|at| *at <= now) else { return };
+    fn step(&mut self, at: Micros) {
         if self.silence_due() == Some(at) {
             self.judge_silence(at);
         } else if self.signal_due() == Some(at) {
-            self.settle_signal(at, false);
+            self.settle_first(at, false);
         } else if self.pulse_due() == Some(at) {
             if let Some(pulse) = self.pulses.pop_front() {
                 self.judge_pulse(pulse);

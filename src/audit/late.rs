@@ -26,7 +26,7 @@ impl<const H: usize> Auditor<H> {
         // sensed excuses nothing.
         let first = self.signals.front().map(|waiting| waiting.signal.at.saturating_add(self.windows.detect.lo));
         if first.is_some_and(|first| first < at) {
-            self.settle_signal(at, false);
+            self.settle_first(at, false);
             return;
         }
         if self.overdue.is_some() {

@@ -12,8 +12,15 @@ pub(super) const SENSED: [RuleId; 3] = [RuleId::In1, RuleId::Se1, RuleId::Rf2];
 impl<const H: usize> Auditor<H> {
     /// Settles the signal that waits longest, at this moment: a state that would have paced by now is there no more unless the
     /// signal was sensed. One that is settled before its time, for want of room, may have changed nothing, whatever it is.
-    pub(super) fn settle_signal(&mut self, at: Micros, before_its_time: bool) {
-        let Some(Waiting { signal, tied }) = self.signals.pop_front() else { return };
+    pub(super) fn settle_first(&mut self, at: Micros, before_its_time: bool) {
+        if let Some(waiting) = self.signals.pop_front() {
+            self.settle_signal(waiting, at, before_its_time);
+        }
+    }
+
+    /// Settles this signal, none waiting before it.
+    pub(super) fn settle_signal(&mut self, waiting: Waiting, at: Micros, before_its_time: bool) {
+        let Waiting { signal, tied } = waiting;
         if self.states.is_empty() {
             // A pulse is overdue and everything it could have told is past: from here the device may be in any state.
             naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at));
@@ -95,7 +102,7 @@ impl<const H: usize> Auditor<H> {
             if !reached || self.states.iter().any(|state| windows.fate(state, &front.signal, Some(pulse)).later) {
                 break;
             }
-            self.settle_signal(pulse, false);
+            self.settle_first(pulse, false);
         }
         for waiting in &mut self.signals {
             waiting.tied |= self.states.show(&self.windows, &waiting.signal, Some(pulse));
