@@ -68,7 +68,7 @@ fn all(kind: Kind) -> Total {
 #[test]
 fn a_sloppy_device_is_never_found_wrong() {
     let total = all(Kind::Wild);
-    assert!(total.share() > 0.5);
+    assert!(total.share() > 0.6, "{total:?}");
 }
 
 #[test]
@@ -80,5 +80,5 @@ fn an_exact_device_judged_exactly_is_wholly_decided() {
 #[test]
 fn an_ordinary_run_is_decided() {
     let total = all(Kind::Ordinary);
-    assert!(total.share() > 0.9);
+    assert!(total.share() > 0.99, "{total:?}");
 }

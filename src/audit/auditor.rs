@@ -45,7 +45,6 @@ pub struct Auditor<const H: usize> {
     pub(super) windows: Windows,
     /// The same with every rule in force: names are found with these.
     pub(super) whole: Windows,
-    pub(super) blind: RuleSet,
     pub(super) paces: Option<Channel>,
     pub(super) senses: Option<Channel>,
     pub(super) clock: Clock,
@@ -113,7 +112,6 @@ impl<const H: usize> Auditor<H> {
         let mut auditor = Self {
             windows,
             whole: windows,
-            blind: RuleSet::EMPTY,
             paces: program.paces(),
             senses: program.senses(),
             clock,
@@ -142,7 +140,7 @@ impl<const H: usize> Auditor<H> {
 
     /// Drops these rules whole: they forbid nothing and name nothing. To be called before anything is observed.
     pub fn blind(&mut self, rules: RuleSet) {
-        self.blind = rules;
+        self.scores.blind(rules);
         self.windows = self.whole.without(rules);
         self.wake = self.next_step();
     }
@@ -194,7 +192,7 @@ impl<const H: usize> Auditor<H> {
         }
         self.close_at_end(now);
         self.close_pause();
-        if self.scores.of(RuleId::En6).broken == 0 && !self.blind.has(RuleId::En6) {
+        if self.scores.of(RuleId::En6).broken == 0 {
             self.scores.held(RuleId::En6, None);
         }
         self.ended = true;
@@ -203,7 +201,7 @@ impl<const H: usize> Auditor<H> {
 
     /// The bench reports that the device emits pulses, or asks to be polled, without time passing.
     pub fn spinning(&mut self, at: Instant) {
-        if self.ended || self.blind.has(RuleId::En6) || self.scores.of(RuleId::En6).broken > 0 {
+        if self.ended || self.scores.is_blind(RuleId::En6) || self.scores.of(RuleId::En6).broken > 0 {
             return;
         }
         let now = self.advance(at);
@@ -250,7 +248,7 @@ impl<const H: usize> Auditor<H> {
             if self.whole.may_see(signal.peak.0) {
                 self.close_pause();
             }
-            self.envelope.signal(now, signal.peak.0, &self.whole, &mut self.scores, self.blind);
+            self.envelope.signal(now, signal.peak.0, &self.whole, &mut self.scores);
         }
         if self.senses != Some(channel) || self.paces != Some(channel) {
             return;
@@ -349,7 +347,7 @@ impl<const H: usize> Auditor<H> {
     }
 
     fn pause_due(&self) -> Option<Micros> {
-        if self.paces.is_none() || self.blind.has(RuleId::En2) {
+        if self.paces.is_none() || self.scores.is_blind(RuleId::En2) {
             return None;
         }
         self.envelope.pause_ends().map(|end| end.saturating_add(self.windows.uncertainty))

@@ -122,3 +122,112 @@ const fn range(name: &'static str, value: u64, least: u64, greatest: u64) -> Res
 const fn conflict(name: &'static str, value: Span, with: &'static str, other: Span, rule: &'static str) -> ParamError {
     ParamError::new(name, Problem::Conflict { value: value.as_micros(), with, other: other.as_micros(), rule })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::audit::{Decision, Limits};
+    use crate::base::{Interval, Mode, Program, Rate, Settings};
+    use std::format;
+    use std::string::String;
+
+    fn settings(mode: Mode, per_minute: u16) -> Settings {
+        Settings::new(mode, Interval::from_rate_nearest(Rate::per_minute(per_minute)))
+    }
+
+    fn vvi() -> Program {
+        settings(Mode::Vvi, 60).check().unwrap()
+    }
+
+    fn refused(program: &Program, change: impl FnOnce(AuditSettings) -> AuditSettings) -> String {
+        format!("{}", change(AuditSettings::new(program)).check(program).unwrap_err())
+    }
+
+    #[test]
+    fn the_defaults_fit_every_mode_and_rate() {
+        for mode in Mode::ALL {
+            for per_minute in [30, 60, 65, 120, 175, 205, 220] {
+                let mut settings = settings(mode, per_minute);
+                settings.refractory = Span::from_millis(200);
+                let program = settings.check().unwrap();
+                assert_eq!(AuditSettings::new(&program).check(&program), Ok(()), "{mode} at {per_minute}");
+            }
+        }
+    }
+
+    #[test]
+    fn what_is_out_of_range_is_refused_by_name() {
+        let program = vvi();
+        let ms = Span::from_millis;
+        assert_eq!(
+            refused(&program, |set| set.with_uncertainty(ms(51), Decision::Guarded)),
+            "uncertainty is 51000, accepted is 0 to 50000"
+        );
+        assert_eq!(
+            refused(&program, |set| set.with_tolerance(Tolerance::symmetric(ms(1_001)))),
+            "tolerance is 1001000, accepted is 0 to 1000000"
+        );
+        assert_eq!(
+            refused(&program, |set| AuditSettings { sensitivity_thousandths: 901, ..set }),
+            "sensitivity_tolerance is 901, accepted is 0 to 900"
+        );
+        assert_eq!(
+            refused(&program, |set| AuditSettings { decide_thousandths: 1_001, ..set }),
+            "decide is 1001, accepted is 0 to 1000"
+        );
+        let limits = AuditSettings::new(&program).limits;
+        assert_eq!(
+            refused(&program, |set| set.with_limits(Limits { longest_pause: Some(ms(300_001)), ..limits })),
+            "longest_pause is 300001000, accepted is 0 to 300000000"
+        );
+        assert_eq!(
+            refused(&program, |set| set.with_limits(Limits { vulnerable: Some((ms(100), ms(2_001))), ..limits })),
+            "vulnerable is 2001000, accepted is 0 to 2000000"
+        );
+    }
+
+    #[test]
+    fn what_contradicts_is_refused_with_both_names() {
+        let program = vvi();
+        let ms = Span::from_millis;
+        let limits = AuditSettings::new(&program).limits;
+        let begins = |text: String, with: &str| assert!(text.starts_with(with), "{text}");
+        begins(
+            refused(&program, |set| set.with_limits(Limits { ceiling: ms(1_001), ..limits })),
+            "ceiling is 1001000 and lower_rate is 1000000: ",
+        );
+        begins(
+            refused(&program, |set| set.with_limits(Limits { longest_pause: Some(ms(900)), ..limits })),
+            "longest_pause is 900000 and hysteresis_rate is 1000000: ",
+        );
+        begins(
+            refused(&program, |set| set.with_limits(Limits { vulnerable: Some((ms(400), ms(150))), ..limits })),
+            "vulnerable is 400000 and vulnerable is 150000: ",
+        );
+        begins(refused(&program, |set| AuditSettings { detect: (ms(10), ms(5)), ..set }), "detect is 10000 and detect is 5000: ");
+        begins(
+            refused(&program, |set| set.with_tolerance(Tolerance::symmetric(ms(250)))),
+            "tolerance is 250000 and refractory is 250000: ",
+        );
+        let mut close = settings(Mode::Vvi, 200);
+        close.refractory = ms(290);
+        begins(refused(&close.check().unwrap(), |set| set), "tolerance is 298000 and lower_rate is 292000: ");
+        let mut short = settings(Mode::Vvi, 60);
+        (short.refractory, short.blanking) = (ms(30), ms(20));
+        let short = short.check().unwrap();
+        begins(
+            refused(&short, |set| set.with_uncertainty(ms(6), Decision::Simple)),
+            "uncertainty is 24000 and refractory is 22000: ",
+        );
+        begins(
+            refused(&short, |set| AuditSettings { detect: (ms(0), ms(22)), ..set }),
+            "detect is 22000 and refractory is 22000: ",
+        );
+        let mut fast = settings(Mode::Voo, 60);
+        fast.lower = Interval::from_span(ms(500)).unwrap();
+        begins(
+            refused(&fast.check().unwrap(), |set| set.with_tolerance(Tolerance::symmetric(ms(500)))),
+            "tolerance is 500000 and lower_rate is 500000: ",
+        );
+    }
+}

@@ -73,11 +73,11 @@ impl Envelope {
     }
 
     /// A signal on the channel that paces.
-    pub(super) fn signal(&mut self, at: Micros, peak: u32, windows: &Windows, scores: &mut Scores, blind: RuleSet) {
+    pub(super) fn signal(&mut self, at: Micros, peak: u32, windows: &Windows, scores: &mut Scores) {
         if !windows.may_see(peak) {
             return;
         }
-        self.hear(at, scores, blind);
+        self.hear(at, scores);
         if at >= self.blind_until && !windows.may_miss(peak) {
             self.sensed = [Some(at), self.sensed[0]];
         }
@@ -85,19 +85,14 @@ impl Envelope {
     }
 
     /// A pulse on the channel that paces; the answer is what it breaks.
-    pub(super) fn pulse(&mut self, at: Micros, scores: &mut Scores, blind: RuleSet) -> RuleSet {
+    pub(super) fn pulse(&mut self, at: Micros, scores: &mut Scores) -> RuleSet {
         let mut broken = RuleSet::EMPTY;
-        let mut judge = |rule: RuleId, case: Case| {
-            if blind.has(rule) {
-                return;
-            }
-            match case {
-                Case::Held(measure) => scores.held(rule, measure),
-                Case::Undecided => scores.undecided(rule),
-                Case::Broken(measure) => {
-                    scores.broken(rule, measure);
-                    broken = broken.with(rule);
-                }
+        let mut judge = |rule: RuleId, case: Case| match case {
+            Case::Held(measure) => scores.held(rule, measure),
+            Case::Undecided => scores.undecided(rule),
+            Case::Broken(measure) => {
+                scores.broken(rule, measure);
+                broken = if scores.is_blind(rule) { broken } else { broken.with(rule) };
             }
         };
         if let Some(last) = self.last_pulse {
@@ -112,7 +107,7 @@ impl Envelope {
                 judge(RuleId::En3, case);
             }
         }
-        self.hear(at, scores, blind);
+        self.hear(at, scores);
         self.last_pulse = Some(at);
         self.blind_until = at.saturating_add(self.blinds);
         broken
@@ -123,8 +118,8 @@ impl Envelope {
         self.heard = at;
     }
 
-    fn hear(&mut self, at: Micros, scores: &mut Scores, blind: RuleSet) {
-        if !self.reported && !blind.has(RuleId::En2) {
+    fn hear(&mut self, at: Micros, scores: &mut Scores) {
+        if !self.reported {
             scores.held(RuleId::En2, Some(Measure::not_later(at, at, self.pause_limit())));
         }
         self.heard = at;

@@ -77,7 +77,7 @@ impl<const H: usize> Auditor<H> {
         let one_later =
             next(overdue.window.earliest, escape.earliest) <= seen && seen <= next(overdue.window.latest, escape.latest);
         self.overdue = None;
-        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Pulse(at), one_later, self.blind);
+        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Pulse(at), one_later, &self.scores);
         let deviation = seen.deviation_from(overdue.window.nominal);
         let mut judgement = self.overdue_judgement(&overdue, at, rule, also.and(broken));
         if !one_later {
@@ -95,7 +95,7 @@ impl<const H: usize> Auditor<H> {
     pub(super) fn close_missing(&mut self, at: Micros) {
         let Some(overdue) = self.overdue.take() else { return };
         let past = self.clock.offset(overdue.window.latest).saturating_add(self.windows.guard).saturating_add(1);
-        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Silence(past), true, self.blind);
+        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Silence(past), true, &self.scores);
         self.scores.broken(rule, None);
         let judgement = self.overdue_judgement(&overdue, at, rule, also);
         self.say(judgement);
@@ -104,7 +104,7 @@ impl<const H: usize> Auditor<H> {
     /// Closes an open finding because nothing can come any more.
     pub(super) fn close_at_end(&mut self, at: Micros) {
         let Some(overdue) = self.overdue.take() else { return };
-        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Silence(at), true, self.blind);
+        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Silence(at), true, &self.scores);
         self.scores.broken(rule, None);
         let judgement = self.overdue_judgement(&overdue, at, rule, also);
         self.say(Judgement { hint: Some(Hint::EndOfRun), ..judgement });

@@ -3,6 +3,7 @@
 use super::clock::Micros;
 use super::history::{Event, History, Origin};
 use super::hypothesis::{Hypotheses, Hypothesis};
+use super::scores::Scores;
 use super::sense::Shown;
 use super::windows::Windows;
 use super::{AnchorKind, Hint, RuleId, RuleSet};
@@ -43,14 +44,11 @@ const ROOM: usize = 8;
 /// beginning can only add conditions; the second and third pulse back are tried where no rule alone explains from the last.
 /// The work is bounded: ten rules, at most 25 replays each, of at most 24 events with at most 8 hypotheses; most rules take one
 /// replay, since a rule that cannot beat the best change so far is not searched further.
-pub(super) fn name(windows: &Windows, history: &History, ending: Ending, missing: bool, blind: RuleSet) -> (RuleId, RuleSet) {
+pub(super) fn name(windows: &Windows, history: &History, ending: Ending, missing: bool, scores: &Scores) -> (RuleId, RuleSet) {
     for back in 1..=FURTHEST {
         let mut best = MOST.saturating_add(1);
         let mut named: Option<(RuleId, RuleSet)> = None;
-        for rule in CANDIDATES {
-            if blind.has(rule) {
-                continue;
-            }
+        for rule in CANDIDATES.into_iter().filter(|rule| !scores.is_blind(*rule)) {
             let Some(change) = least_change(windows, history, ending, missing, back, rule, best.min(MOST)) else { continue };
             named = Some(match named {
                 Some((first, also)) if change == best => (first, also.with(rule)),
@@ -62,8 +60,10 @@ pub(super) fn name(windows: &Windows, history: &History, ending: Ending, missing
             return named;
         }
     }
-    let fallback = if matches!(ending, Ending::Pulse(_)) { RuleId::Lr2 } else { RuleId::Lr1 };
-    (fallback, RuleSet::EMPTY)
+    // No rule alone explains it. What is left to say is that it came too early, or too late.
+    let plain = if matches!(ending, Ending::Pulse(_)) { RuleId::Lr2 } else { RuleId::Lr1 };
+    let named = [plain].into_iter().chain(CANDIDATES).find(|rule| !scores.is_blind(*rule));
+    (named.unwrap_or(plain), RuleSet::EMPTY)
 }
 
 /// The least change of this rule alone that explains, if one of at most `most` does.

@@ -25,10 +25,8 @@ impl<const H: usize> Auditor<H> {
     /// Judges a pulse on the channel that paces.
     pub(super) fn judge_pulse(&mut self, at: Micros) {
         self.close_pause();
-        let broken = self.envelope.pulse(at, &mut self.scores, self.blind);
-        if !self.blind.has(RuleId::En4) {
-            self.scores.held(RuleId::En4, None);
-        }
+        let broken = self.envelope.pulse(at, &mut self.scores);
+        self.scores.held(RuleId::En4, None);
         self.settle_before(at);
         let closed = self.close_overdue(at, broken);
         if !closed {
@@ -52,7 +50,7 @@ impl<const H: usize> Auditor<H> {
 
     /// A pulse on another channel, or in a mode that paces nothing.
     pub(super) fn judge_stray(&mut self, channel: Channel, at: Micros) {
-        if self.blind.has(RuleId::En4) {
+        if self.scores.is_blind(RuleId::En4) {
             return;
         }
         self.close_missing(at);
@@ -98,59 +96,60 @@ impl<const H: usize> Auditor<H> {
     }
 
     fn judge_expected(&mut self, at: Micros, expected: &Expected) {
-        let windows = &self.windows;
-        let kind = expected.nearest.kind;
-        let spread = match kind {
-            AnchorKind::Sensed => windows.detect.hi.saturating_sub(windows.detect.lo),
-            AnchorKind::Paced | AnchorKind::Start => 0,
-        };
-        let nominal_width = windows.escape(kind).width().saturating_add(spread);
-        let inside = at.saturating_sub(expected.earliest) >= windows.guard && expected.latest.saturating_sub(at) >= windows.guard;
-        let hint = if expected.latest.saturating_sub(expected.earliest) > nominal_width {
-            Some(expected.why.unwrap_or(Hint::UnknownState))
-        } else if inside {
-            None
-        } else {
-            Some(Hint::WithinUncertainty)
-        };
+        let hint = self.doubt(at, expected);
         let late = Measure::not_later(at, expected.nominal, expected.latest);
         let early = Measure::not_earlier(at, expected.nominal, expected.earliest);
-        let by_hysteresis = windows.hysteresis && kind == AnchorKind::Sensed;
         let nearer = if late.margin < early.margin { late } else { early };
-        let measured: [Option<(RuleId, Measure)>; 3] = if by_hysteresis {
-            [Some((RuleId::Hy1, nearer)), None, None]
+        let hysteresis = self.windows.hysteresis;
+        let (rule, measured) = if hysteresis && expected.nearest.kind == AnchorKind::Sensed {
+            (RuleId::Hy1, [Some((RuleId::Hy1, nearer)), None, None])
         } else {
-            [Some((RuleId::Lr1, late)), Some((RuleId::Lr2, early)), Some((RuleId::Hy2, nearer)).filter(|_| windows.hysteresis)]
+            let after_pulse = Some((RuleId::Hy2, nearer)).filter(|_| hysteresis);
+            let rule = if late.margin < early.margin { RuleId::Lr1 } else { RuleId::Lr2 };
+            (rule, [Some((RuleId::Lr1, late)), Some((RuleId::Lr2, early)), after_pulse])
         };
-        let rule = match (by_hysteresis, late.margin < early.margin) {
-            (true, _) => RuleId::Hy1,
-            (false, true) => RuleId::Lr1,
-            (false, false) => RuleId::Lr2,
-        };
-        let owed = self.owed;
-        if hint.is_none() {
+        let measured = measured.into_iter().flatten();
+        let outcome = if hint.is_none() {
             self.counts.decided = self.counts.decided.saturating_add(1);
-            for (rule, measure) in measured.into_iter().flatten().filter(|(rule, _)| !self.blind.has(*rule)) {
-                self.scores.held(rule, Some(measure));
-            }
-            self.scores.all_held(owed.with(RuleId::Cm1).without(self.blind));
+            measured.for_each(|(rule, measure)| self.scores.held(rule, Some(measure)));
+            self.scores.held(RuleId::Cm1, None);
+            self.scores.all_held(self.owed);
+            Outcome::Held
         } else {
             self.counts.undecided = self.counts.undecided.saturating_add(1);
-            for (rule, _) in measured.into_iter().flatten().filter(|(rule, _)| !self.blind.has(*rule)) {
-                self.scores.undecided(rule);
-            }
-            owed.without(self.blind).iter().for_each(|rule| self.scores.undecided(rule));
-        }
-        let outcome = if hint.is_none() { Outcome::Held } else { Outcome::Undecided };
+            measured.for_each(|(rule, _)| self.scores.undecided(rule));
+            self.scores.all_undecided(self.owed);
+            Outcome::Undecided
+        };
         let judgement = self.judgement(at, outcome, How::OnTime, rule);
         let judgement = Judgement { hint, ..self.with_window(judgement, &expected.nearest) };
         self.say(self.with_pulse(judgement, at, expected.nominal));
         self.states.only(Hypothesis::paced(at));
     }
 
+    /// Why the timing of an expected pulse is undecided, if it is: the states that allow it leave more room than one window has, or it
+    /// lies within the uncertainty of a limit.
+    fn doubt(&self, at: Micros, expected: &Expected) -> Option<Hint> {
+        let windows = &self.windows;
+        let kind = expected.nearest.kind;
+        let spread = match kind {
+            AnchorKind::Sensed => windows.detect.hi.saturating_sub(windows.detect.lo),
+            AnchorKind::Paced | AnchorKind::Start => 0,
+        };
+        let room = expected.latest.saturating_sub(expected.earliest);
+        let from_limit = at.saturating_sub(expected.earliest).min(expected.latest.saturating_sub(at));
+        if room > windows.escape(kind).width().saturating_add(spread) {
+            Some(expected.why.unwrap_or(Hint::UnknownState))
+        } else if from_limit < windows.guard {
+            Some(Hint::WithinUncertainty)
+        } else {
+            None
+        }
+    }
+
     /// A pulse that no state allows.
     fn judge_unexpected(&mut self, at: Micros, broken: RuleSet) {
-        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Pulse(at), false, self.blind);
+        let (rule, also) = naming::name(&self.whole, &self.history, Ending::Pulse(at), false, &self.scores);
         let nearest = self.states.iter().copied().min_by_key(|state| self.nominal_of(state).abs_diff(at));
         let how = if rule == RuleId::Cm1 { How::Unexpected } else { How::Early };
         if SENSED.contains(&rule) {

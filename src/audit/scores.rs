@@ -12,10 +12,11 @@ struct Tally {
     worst: Option<(i32, i32)>,
 }
 
-/// What every rule has seen.
+/// What every rule has seen, but for those that are dropped.
 #[derive(Debug, Clone, Copy, Default)]
 pub(super) struct Scores {
     rules: [Tally; RuleId::COUNT],
+    blind: RuleSet,
 }
 
 /// A measured case: how far from nominal, and how far inside the limit; outside is negative.
@@ -26,6 +27,16 @@ pub(super) struct Measure {
 }
 
 impl Scores {
+    /// From now on these rules see nothing.
+    pub(super) const fn blind(&mut self, rules: RuleSet) {
+        self.blind = rules;
+    }
+
+    /// True if this rule is dropped.
+    pub(super) const fn is_blind(&self, rule: RuleId) -> bool {
+        self.blind.has(rule)
+    }
+
     pub(super) fn of(&self, rule: RuleId) -> Score {
         let Some(tally) = self.rules.get(usize::from(rule.number())) else { return Score::default() };
         Score {
@@ -52,7 +63,9 @@ impl Scores {
 
     /// These rules held, nothing being measured.
     pub(super) fn all_held(&mut self, rules: RuleSet) {
-        rules.iter().for_each(|rule| self.held(rule, None));
+        if !rules.is_empty() {
+            rules.iter().for_each(|rule| self.held(rule, None));
+        }
     }
 
     /// A case that was counted as held turned out otherwise.
@@ -60,7 +73,17 @@ impl Scores {
         self.change(rule, None, |tally| tally.held = tally.held.saturating_sub(1));
     }
 
+    /// Nothing could be told about these rules.
+    pub(super) fn all_undecided(&mut self, rules: RuleSet) {
+        if !rules.is_empty() {
+            rules.iter().for_each(|rule| self.undecided(rule));
+        }
+    }
+
     fn change(&mut self, rule: RuleId, measure: Option<Measure>, count: impl FnOnce(&mut Tally)) {
+        if self.blind.has(rule) {
+            return;
+        }
         let Some(tally) = self.rules.get_mut(usize::from(rule.number())) else { return };
         count(tally);
         if let Some(Measure { deviation, margin }) = measure

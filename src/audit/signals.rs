@@ -112,9 +112,7 @@ impl<const H: usize> Auditor<H> {
     /// A beat came first: the window it ended was rightly left without a pulse.
     fn withhold(&mut self, sensed: &Hypothesis, before: Option<Hypothesis>) {
         for rule in SENSED {
-            if !self.blind.has(rule) {
-                self.scores.held(rule, None);
-            }
+            self.scores.held(rule, None);
         }
         // Whether an earlier signal had moved the window cannot be seen any more.
         self.owed = RuleSet::EMPTY;
@@ -133,9 +131,7 @@ impl<const H: usize> Auditor<H> {
             Hint::AtEdge | Hint::Straddles => RuleId::Rf2,
             _ => RuleId::In1,
         };
-        if !self.blind.has(rule) {
-            self.scores.undecided(rule);
-        }
+        self.scores.undecided(rule);
         self.counts.undecided = self.counts.undecided.saturating_add(1);
         let judgement = self.judgement(at.hi, Outcome::Undecided, How::Withheld, rule);
         let judgement = before.map_or(judgement, |state| self.with_window(judgement, &state));

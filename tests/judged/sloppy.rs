@@ -49,7 +49,7 @@ pub(crate) enum Kind {
     Wild,
     /// An exact device, no tolerance, no uncertainty, peaks outside the band, events on every edge.
     Exact,
-    /// Tolerance 8 ms, peaks outside the band, beats at any time.
+    /// Tolerance 8 ms, peaks outside the band, beats 600 to 1200 ms apart, one in twenty at any time.
     Ordinary,
 }
 
@@ -322,7 +322,8 @@ impl Run {
         ];
         let anywhere = self.kind == Kind::Ordinary || self.dice.one_in(3);
         let at = if anywhere {
-            self.now + 1 + self.dice.below(2 * edges[2])
+            let beats = self.kind == Kind::Ordinary && !self.dice.one_in(20);
+            self.now + 1 + if beats { 600_000 + self.dice.below(600_000) } else { self.dice.below(2 * edges[2]) }
         } else if self.kind == Kind::Wild && self.dice.one_in(5) {
             self.now + self.dice.pick(&[0, 1, 500, 3_000, 30_000])
         } else {
