@@ -256,3 +256,20 @@ fn wrong_words_end_with_2() {
         assert!(!err.is_empty());
     }
 }
+
+#[cfg(target_os = "linux")]
+#[test]
+fn an_answer_that_cannot_be_written_ends_with_2_and_one_that_nobody_reads_does_not() {
+    use std::process::Stdio;
+    let run = |out: Stdio| {
+        let mut command = std::process::Command::new(assert_cmd::cargo::cargo_bin("phase4"));
+        command.current_dir(root()).args(["run", "examples/scenarios/faulty-device.toml", "--json"]).stdout(out);
+        command.stderr(Stdio::null());
+        command
+    };
+    let full = fs::OpenOptions::new().write(true).open("/dev/full").unwrap();
+    assert_eq!(run(Stdio::from(full)).status().unwrap().code(), Some(2));
+    let mut child = run(Stdio::piped()).spawn().unwrap();
+    drop(child.stdout.take());
+    assert_eq!(child.wait().unwrap().code(), Some(1));
+}

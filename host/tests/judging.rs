@@ -8,7 +8,7 @@ use phase4::audit::{RuleId, RuleSet};
 use phase4_host::assemble::{Outcome, run_data};
 use phase4_host::judge::judge;
 use phase4_host::log_file::{CsvLog, JsonLog, Usual, parse};
-use phase4_host::output::Summary;
+use phase4_host::output::{Summary, sentence};
 use phase4_host::run::names;
 use phase4_host::run_data::{RunData, Verdict};
 use phase4_host::scenario::Scenario;
@@ -147,4 +147,55 @@ fn coverage_alone_never_changes_a_verdict() {
     let coverage = run.coverage.unwrap();
     assert!(coverage.hit < coverage.required);
     assert_eq!(run.verdict, Verdict::Holds);
+}
+
+/// A log of a device's own: signals and pulses at any instants, far apart and close together, with and without start and end.
+fn wild_log() -> impl Strategy<Value = String> {
+    let gap = prop_oneof![Just(0_u64), Just(1), 1..2_000_u64, 100_000..1_500_000_u64, 0..1_u64 << 33, 0..1_u64 << 60];
+    let line = prop_oneof![
+        Just("\"what\":\"pulse\",\"where\":\"V\"".to_owned()),
+        Just("\"what\":\"pulse\",\"where\":\"A\"".to_owned()),
+        (0..9_000_u32).prop_map(|peak| format!("\"what\":\"signal\",\"where\":\"V\",\"peak_uv\":{peak},\"width_us\":4294967295")),
+        Just("\"what\":\"activated\",\"where\":\"apex\",\"cause\":\"pulse V\"".to_owned()),
+    ];
+    let first = prop_oneof![Just(0_u64), 0..1_u64 << 40, Just(u64::MAX), Just((1 << 32) - 5)];
+    (first, any::<bool>(), any::<bool>(), proptest::collection::vec((gap, line), 0..60)).prop_map(
+        |(first, starts, ends, lines)| {
+            let mut at = first;
+            let mut text = String::new();
+            if starts || lines.is_empty() {
+                text.push_str(&format!("{{\"at_us\":{at},\"what\":\"start\",\"where\":\"run\"}}\n"));
+            }
+            for (gap, line) in lines {
+                at = at.saturating_add(gap);
+                text.push_str(&format!("{{\"at_us\":{at},{line}}}\n"));
+            }
+            if ends {
+                text.push_str(&format!("{{\"at_us\":{at},\"what\":\"end\",\"where\":\"run\",\"reason\":\"length reached\"}}\n"));
+            }
+            text
+        },
+    )
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(400))]
+
+    #[test]
+    fn any_log_gets_a_verdict_at_once(text in wild_log(), scenario in some_scenario()) {
+        let scenario = parsed(&scenario);
+        let names = names(&scenario);
+        let mut log = parse(text.as_bytes(), "log", &names, Usual::default()).unwrap_or_else(|no| panic!("{no}"));
+        let hash = number(&mut log.records);
+        let mut tally = Tally::default();
+        log.records.iter().for_each(|record| tally.take(record));
+        let began = std::time::Instant::now();
+        let judged = judge(&log, &scenario).unwrap();
+        prop_assert!(began.elapsed() < std::time::Duration::from_secs(2), "{text}");
+        let outcome = Outcome { command: String::new(), tally, hash, records: log.records, judged };
+        let run = run_data(&scenario, outcome, RuleSet::EMPTY).unwrap();
+        prop_assert!(!sentence(&run).is_empty());
+        prop_assert!(Summary::of(&run).to_json().len() > 100);
+        prop_assert!(phase4_host::report::page(&run).len() < 1_000_000);
+    }
 }

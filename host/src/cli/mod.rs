@@ -6,7 +6,7 @@ mod progress;
 
 use args::{Args, Command};
 use clap::Parser;
-use std::io::{IsTerminal, Write};
+use std::io::{ErrorKind, IsTerminal, Write};
 use std::process::ExitCode;
 
 /// Bad input, or an output that cannot be written.
@@ -21,10 +21,15 @@ pub fn main() -> ExitCode {
     };
     match answer {
         Ok(answer) => {
-            // A reader that has gone away has seen what it wanted: the verdict stands all the same.
             let mut out = std::io::stdout().lock();
-            let _ = out.write_all(answer.text.as_bytes()).and_then(|()| out.flush());
-            ExitCode::from(answer.verdict.exit_code())
+            match out.write_all(answer.text.as_bytes()).and_then(|()| out.flush()) {
+                // A reader that has gone away has seen what it wanted: the verdict stands all the same.
+                Err(error) if error.kind() != ErrorKind::BrokenPipe => {
+                    let _ = writeln!(std::io::stderr(), "phase4: cannot write the answer: {error}");
+                    ExitCode::from(BAD_INPUT)
+                }
+                _ => ExitCode::from(answer.verdict.exit_code()),
+            }
         }
         Err(refusal) => {
             let mut err = std::io::stderr().lock();
