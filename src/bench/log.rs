@@ -36,7 +36,8 @@ impl Log {
     }
 }
 
-/// Something that stores records: a ring on a target, a `Vec` or a file on a host. What it does never changes the hash.
+/// Something that stores records: a [`Ring`] on a target; on a host, with the feature `std`, a `Vec` or a writer. What it does never
+/// changes the hash.
 pub trait Sink {
     /// Takes one record, in order.
     fn take(&mut self, record: &Record);

@@ -6,6 +6,8 @@ mod closed_loop;
 mod cues;
 mod log;
 mod script;
+#[cfg(feature = "std")]
+mod std_sinks;
 #[cfg(test)]
 mod tests;
 
@@ -13,3 +15,5 @@ pub use closed_loop::{Bench, EndReason, Entry, MOST_PULSES_AT_ONCE, Setup};
 pub use cues::{Cued, Script};
 pub use log::{Log, Ring, Sink};
 pub use script::{Act, Amount, Coupling, Event, Step, When, WindowEnd};
+#[cfg(feature = "std")]
+pub use std_sinks::RecordWriter;
