@@ -15,7 +15,7 @@ pub fn sentence(run: &RunData) -> String {
     let length = show_length(run.simulated.as_micros());
     match run.verdict {
         Verdict::Holds => {
-            let idle = run.scores.iter().filter(|(_, score)| score.checked == 0).count();
+            let idle = crate::report::untried(run);
             let idle = match idle {
                 0 => String::new(),
                 1 => "; one was not tried".to_owned(),

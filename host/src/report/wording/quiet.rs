@@ -1,6 +1,5 @@
 //! How every other run is told: good news is quiet, and what was not looked at is said.
 
-use crate::report::applies::applying;
 use crate::report::facts::{Case, Facts};
 use crate::report::number::{at, count, counted, length, limit, ms_tenth};
 use phase4::audit::{Hint, Judgement, Outcome};
@@ -10,7 +9,7 @@ use phase4::base::Span;
 type Words = (String, Option<String>);
 
 pub(super) fn holds(facts: &Facts<'_>) -> Words {
-    let untried = applying(facts.run).filter(|(_, score)| score.checked == 0).count() as u64;
+    let untried = crate::report::untried(facts.run) as u64;
     let rest = match untried {
         0 => "every rule held.".to_owned(),
         1 => "every rule that was tried held; 1 was not tried.".to_owned(),
