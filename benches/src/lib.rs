@@ -4,3 +4,4 @@ pub mod measure;
 pub mod ours;
 pub mod peers;
 pub mod rhythm;
+pub mod table;

@@ -3,8 +3,7 @@
 use crate::rhythm::{BLOCKED, ESCAPE, LINK, LOWER, NODE_BASE, NODE_GAIN, NODE_TAU, REFRACTORY, SINUS, Tally};
 use phase4::audit::AuditSettings;
 use phase4::base::{
-    Decay, Deviation, Instant, Interval, Kind, MilliVolts, Mode, Program, Rate, Record, RecordHash, Settings, SiteId,
-    Span, TractId,
+    Decay, Deviation, Instant, Interval, Kind, MilliVolts, Mode, Program, Rate, Record, Settings, SiteId, Span, TractId,
 };
 use phase4::bench::{Act, Amount, Bench, Coupling, Event, Setup, Sink, Step, When};
 use phase4::device::ReferenceDevice;
@@ -30,25 +29,30 @@ impl Sink for Beats {
     }
 }
 
-const ATRIUM: SiteId = SiteId::new(0);
-const VENTRICLE: SiteId = SiteId::new(1);
-const NODE: TractId = TractId::new(0);
+const SINUS_NODE: SiteId = SiteId::new(0);
+const ATRIUM: SiteId = SiteId::new(1);
+const VENTRICLE: SiteId = SiteId::new(2);
+const SINUS_ATRIUM: TractId = TractId::new(0);
 
 fn interval(micros: u64) -> Interval {
     Interval::from_span(us(micros)).unwrap_or(Interval::MAX)
 }
 
-/// The common rhythm: two sites, two cells, one tract, a VVI device, and two steps that block every fifth atrial beat.
+/// The common rhythm: three sites, two tracts, two cells, a VVI device, and two steps that block every fifth beat.
 pub fn common_rhythm(until: u64) -> Tally {
     let tissue = SiteParams::new(us(REFRACTORY)).with_latency(us(LINK));
     let tau = Decay::new(us(NODE_TAU)).expect("within range");
+    let link = Way::new(us(LINK));
     let forward = Way::new(us(NODE_BASE)).with_recovery(us(NODE_GAIN), tau);
     // Nothing goes back, and what tries leaves the node as it was.
-    let backward = Way::closed(us(NODE_BASE)).with_conceal(Fraction::ZERO);
+    let backward = Way::new(us(NODE_BASE)).with_theta(Span::from_secs(60)).with_conceal(Fraction::ZERO);
     let anatomy = Anatomy::new(
-        [tissue; 2],
-        [TractParams::new(ATRIUM, VENTRICLE, Fraction::ONE, forward, backward)],
-        [CellParams::new(ATRIUM, interval(SINUS)), CellParams::new(VENTRICLE, interval(ESCAPE))],
+        [tissue; 3],
+        [
+            TractParams::new(SINUS_NODE, ATRIUM, Fraction::ZERO, link, link),
+            TractParams::new(ATRIUM, VENTRICLE, Fraction::ONE, forward, backward),
+        ],
+        [CellParams::new(SINUS_NODE, interval(SINUS)), CellParams::new(VENTRICLE, interval(ESCAPE))],
     )
     .expect("a sound table");
     let lead = LeadParams {
@@ -58,10 +62,10 @@ pub fn common_rhythm(until: u64) -> Tally {
     let program = Settings::new(Mode::Vvi, interval(LOWER)).check().expect("a sound program");
     let soon = Coupling { window: None, shift: Amount::Fixed(Deviation::from_micros(1)) };
     let steps = [
-        Step { when: When::Every(us(BLOCKED * SINUS)), act: Act::Shut(NODE, Ways::Forward), times: u32::MAX },
+        Step { when: When::Every(us(BLOCKED * SINUS)), act: Act::Shut(SINUS_ATRIUM, Ways::Forward), times: u32::MAX },
         Step {
-            when: When::After { event: Event::Block(NODE), nth: 1, coupling: soon },
-            act: Act::Open(NODE, Ways::Forward),
+            when: When::After { event: Event::Block(SINUS_ATRIUM), nth: 1, coupling: soon },
+            act: Act::Open(SINUS_ATRIUM, Ways::Forward),
             times: u32::MAX,
         },
     ];
@@ -76,27 +80,23 @@ pub fn common_rhythm(until: u64) -> Tally {
         seed: 1,
     };
     let device = ReferenceDevice::new(program, Instant::ZERO);
-    let mut bench: Bench<'_, _, 2, 1, 2, 0, 2, 3> = Bench::new(&setup, Some(device)).expect("a sound setup");
+    let mut bench: Bench<'_, _, 3, 2, 2, 0, 2, 3> = Bench::new(&setup, Some(device)).expect("a sound setup");
     let mut beats = Beats { site: VENTRICLE, tally: Tally::default() };
     bench.run(Instant::MAX, &mut beats);
     beats.tally
 }
 
-/// The plain heart alone, every record hashed: five activations a beat. Gives the beats of its ventricle and the hash.
+/// The plain heart alone: five activations a beat, and two records of a cell being reset. Gives its records and the last instant.
 pub fn heart_alone(beats: u64) -> (u64, u64) {
     let mut heart = Heart::new(&plain::ANATOMY, &[], Instant::ZERO).expect("no foci to refuse");
-    let mut hash = RecordHash::new();
-    let mut counted = 0;
-    while let Some(record) = heart.poll(Instant::MAX) {
-        hash.add(&record);
-        if record.kind == Kind::Activated && record.place == plain::APEX.row() {
-            counted += 1;
-            if counted == beats {
-                break;
-            }
-        }
+    // 800 ms a beat, and 260 ms from the sinus node to the apex.
+    let until = Instant::from_micros(beats * 800_000 + 500_000);
+    let (mut records, mut last) = (0, Instant::ZERO);
+    while let Some(record) = heart.poll(until) {
+        records += 1;
+        last = record.at;
     }
-    (counted, hash.value())
+    (records, last.as_micros())
 }
 
 /// What a VVI device does at a plain heart of 75 per minute.
@@ -104,13 +104,24 @@ pub fn heart_alone(beats: u64) -> (u64, u64) {
 pub enum Vvi {
     /// It is set to 60 per minute and senses every beat.
     Senses,
-    /// It is set to 60 per minute, and the atrium's every fifth beat is blocked by the script.
+    /// It is set to 60 per minute, and the script blocks every fifth beat on its way to the atrium.
     Mixed,
     /// It is set to 90 per minute and paces every beat, against the sinus node.
     Paces,
 }
 
 impl Vvi {
+    /// The kind of this name, and whether it is audited.
+    pub fn of(name: &str) -> Option<(Self, bool)> {
+        let kind = match name.strip_suffix("-audited").unwrap_or(name) {
+            "vvi-senses" => Self::Senses,
+            "vvi-mixed" => Self::Mixed,
+            "vvi-paces" => Self::Paces,
+            _ => return None,
+        };
+        Some((kind, name.ends_with("-audited")))
+    }
+
     fn program(self) -> Program {
         let rate = if self == Self::Paces { 90 } else { 60 };
         let mut settings = Settings::new(Mode::Vvi, Interval::from_rate_nearest(Rate::per_minute(rate)));
@@ -122,15 +133,12 @@ impl Vvi {
 /// The plain heart and a VVI device in a closed loop. Gives the beats of the apex and the log's hash.
 pub fn vvi_loop(kind: Vvi, audited: bool, beats: u64) -> (u64, u64) {
     let program = kind.program();
-    let soon = |millis| Coupling { window: None, shift: Amount::Fixed(Deviation::from_millis(millis)) };
-    let atrial = |nth, millis| When::After { event: Event::Activation(plain::ATRIUM), nth, coupling: soon(millis) };
+    let soon = Coupling { window: None, shift: Amount::Fixed(Deviation::from_micros(1)) };
+    let blocked = When::After { event: Event::Block(plain::SINUS_ATRIUM), nth: 1, coupling: soon };
     let steps = [
-        Step { when: atrial(5, 400), act: Act::Open(plain::ATRIUM_JUNCTION, Ways::Forward), times: u32::MAX },
-        Step {
-            when: When::After { event: Event::Activation(plain::ATRIUM), nth: 1, coupling: soon(500) },
-            act: Act::Shut(plain::ATRIUM_JUNCTION, Ways::Forward),
-            times: u32::MAX,
-        },
+        // Five times 800 ms.
+        Step { when: When::Every(Span::from_secs(4)), act: Act::Shut(plain::SINUS_ATRIUM, Ways::Forward), times: u32::MAX },
+        Step { when: blocked, act: Act::Open(plain::SINUS_ATRIUM, Ways::Forward), times: u32::MAX },
     ];
     let steps = if kind == Vvi::Mixed { &steps[..] } else { &[] };
     let setup = Setup {

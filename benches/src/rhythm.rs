@@ -1,11 +1,12 @@
 //! The rhythm that everything is measured on, and what is kept of its beats.
 //!
-//! - The sinus node fires every 833 333 µs, first at that instant, and the atrium with it.
+//! - The sinus node fires every 833 333 µs, first at that instant, and the atrium 1 µs later. Every fifth beat is blocked between them.
 //! - The AV node delays by 90 + 780 · exp(−r/110) ms to the nearest microsecond, r = time since the last conducted wave left it;
-//!   at the start it is fully recovered. Every fifth atrial beat is blocked and leaves the node as it was.
+//!   at the start it is fully recovered.
 //! - The ventricle is refractory for 250 ms. An escape cell of 1 714 ms is restarted by every ventricular beat.
 //! - A VVI device of 1 000 ms senses a beat 1 µs after it and paces each one that was blocked; a pulse is answered 1 µs later.
-//!   Those microseconds are the shortest delays that phase4 allows, and every program here has them.
+//!
+//! Those microseconds are the shortest delays that phase4 allows, and every program here has them.
 //!
 //! A beat is a ventricular beat: five in every five cycles of the sinus node, four conducted and one paced.
 
@@ -17,7 +18,7 @@ pub const NODE_BASE: u64 = 90_000;
 pub const NODE_GAIN: u64 = 780_000;
 /// How fast that wears off, µs.
 pub const NODE_TAU: u64 = 110_000;
-/// Every such atrial beat is blocked.
+/// Every such beat of the sinus node is blocked.
 pub const BLOCKED: u64 = 5;
 /// Refractory period of the ventricle, µs.
 pub const REFRACTORY: u64 = 250_000;
@@ -27,7 +28,7 @@ pub const ESCAPE: u64 = 1_714_000;
 pub const LOWER: u64 = 1_000_000;
 /// How long the device is blind after its own pulse, µs.
 pub const BLANKING: u64 = 100_000;
-/// From a beat to its sense, and from a pulse to its beat, µs.
+/// From sinus node to atrium, from a beat to its sense, from a pulse to its beat, µs.
 pub const LINK: u64 = 1;
 /// No time: what is not due.
 pub const NEVER: u64 = u64::MAX;

@@ -147,7 +147,9 @@ impl<const H: usize> Auditor<H> {
 
     /// Takes a record. Signals, pulses and the end count; all else is not visible at a bench and is ignored.
     pub fn observe(&mut self, record: &Record) {
-        if self.ended || !record.kind.is_bench_visible() {
+        // What a channel that is not paced shows bears on no rule of a single-chamber mode.
+        let elsewhere = record.kind == Kind::Signal && self.paces.is_none_or(|channel| channel.number() != record.place);
+        if self.ended || elsewhere || !record.kind.is_bench_visible() {
             return;
         }
         let now = self.advance(record.at);
@@ -168,10 +170,15 @@ impl<const H: usize> Auditor<H> {
     }
 
     /// The next judgement settled at or before `now`, if there is one.
+    #[inline]
     pub fn poll(&mut self, now: Instant) -> Option<Judgement> {
         self.now = self.now.max(now);
-        if self.judgements.is_empty() && !self.is_idle() {
-            self.advance(now);
+        if self.judgements.is_empty() && self.is_idle() { None } else { self.fetch() }
+    }
+
+    fn fetch(&mut self) -> Option<Judgement> {
+        if self.judgements.is_empty() {
+            self.advance(self.now);
         }
         self.judgements.pop_front()
     }
@@ -309,6 +316,7 @@ impl<const H: usize> Auditor<H> {
         self.wake = self.next_step();
     }
 
+    #[inline]
     fn is_idle(&self) -> bool {
         self.ended || self.wake.is_none_or(|at| self.clock.offset(self.now) < at)
     }

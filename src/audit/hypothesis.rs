@@ -78,12 +78,27 @@ impl<const H: usize> Hypotheses<H> {
         self.alive.is_empty()
     }
 
+    /// The one alive, if it is the only one.
+    pub(super) fn single(&self) -> Option<Hypothesis> {
+        match self.alive.as_slice() {
+            [only] => Some(*only),
+            _ => None,
+        }
+    }
+
     pub(super) fn iter(&self) -> core::slice::Iter<'_, Hypothesis> {
         self.alive.iter()
     }
 
-    pub(super) fn retain(&mut self, keep: impl FnMut(&Hypothesis) -> bool) {
-        self.alive.retain(keep);
+    pub(super) fn retain(&mut self, mut keep: impl FnMut(&Hypothesis) -> bool) {
+        // One is the rule: nothing to be moved about then.
+        if let [only] = self.alive.as_slice() {
+            if !keep(only) {
+                self.alive.clear();
+            }
+        } else {
+            self.alive.retain(keep);
+        }
     }
 
     /// Moves every anchor `by` earlier.

@@ -126,6 +126,17 @@ impl Windows {
         fate
     }
 
+    /// The sense of a signal that leaves nothing open: one that must be seen, clear of every window and before every expiry.
+    /// What [`fate`](Self::fate) would say of most signals, at a fraction of its cost; `None` if it takes more to tell.
+    pub(super) fn plain_sense(&self, state: &Hypothesis, signal: &Shown) -> Option<Hypothesis> {
+        let lo = signal.at.saturating_add(self.detect.lo);
+        let hi = signal.at.saturating_add(self.detect.hi);
+        let must_see = !self.may_miss(signal.peak) && self.may_see(signal.peak) && !self.ignores;
+        let clear = signal.at >= self.blanking_of(state).1 && lo >= self.refractory_of(state).1;
+        let in_time = hi < self.expires(state);
+        if must_see && clear && in_time { Some(Hypothesis { lo, hi, kind: AnchorKind::Sensed, why: None }) } else { None }
+    }
+
     /// First moment outside blanking, at the earliest and at the latest.
     const fn blanking_of(&self, state: &Hypothesis) -> (Micros, Micros) {
         (

@@ -25,6 +25,13 @@ impl<const H: usize> Auditor<H> {
             // A pulse is overdue and everything it could have told is past: from here the device may be in any state.
             naming::begin(&mut self.states, &self.windows, Origin::Unknown(signal.at));
         }
+        if let Some(state) = self.states.single().filter(|_| !before_its_time)
+            && let Some(sensed) = self.windows.plain_sense(&state, &signal)
+        {
+            self.states.only(sensed);
+            self.withhold(&sensed, Some(state));
+            return;
+        }
         let next = self.signals.front().map(|waiting| waiting.signal.at.saturating_add(self.windows.detect.lo));
         let mut alone: Option<Hypothesis> = None;
         let mut count = 0_u32;

@@ -8,7 +8,10 @@ use super::{Channel, Instant, MicroVolts, MilliVolts, Pulse, Signal, Span};
 /// # Shape
 /// 24 bytes, little-endian: 0–7 [`at`](Self::at) in µs; 8 [`kind`](Self::kind); 9 [`place`](Self::place); 10 and 11 the
 /// [`cause`](Self::cause); 12–15 and 16–19 two details whose meaning [`Kind`] tells; 20–23 the running number.
+///
+/// It lies in memory as in its canonical form, so that on a little-endian machine hashing it moves nothing.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+#[repr(C)]
 pub struct Record {
     /// When.
     pub at: Instant,
@@ -87,6 +90,7 @@ impl Kind {
 
 /// Why something happened.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+#[repr(C)]
 pub struct Cause {
     /// Of what sort.
     pub kind: CauseKind,

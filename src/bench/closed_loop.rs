@@ -168,29 +168,33 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     #[inline]
     fn instant(&mut self) -> Option<Record> {
         if self.phase == Phase::Script {
-            if let Some(record) = self.run_script() {
-                return Some(record);
+            if self.shows || self.script.is_due(self.now) {
+                let record = self.run_script();
+                if record.is_some() {
+                    return record;
+                }
             }
             self.phase = Phase::Heart;
         }
         if self.phase == Phase::Heart {
-            if let Some(record) = self.heart.poll(self.now) {
-                if record.kind == Kind::Activated {
-                    self.lead.activated(&record);
-                }
-                return Some(self.enter(record));
+            if let Some(mut record) = self.heart.poll(self.now) {
+                self.lead.activated(&record);
+                self.write(&mut record);
+                return Some(record);
             }
             self.phase = Phase::Lead;
         }
         if self.phase == Phase::Lead {
-            if let Some(record) = self.lead.poll(self.now) {
-                return Some(self.show(record));
+            if let Some(mut record) = self.lead.poll(self.now) {
+                self.show(&mut record);
+                return Some(record);
             }
             self.phase = Phase::Device;
         }
         if self.phase == Phase::Device {
-            if let Some(record) = self.run_device() {
-                return Some(record);
+            let record = self.run_device();
+            if record.is_some() {
+                return record;
             }
             if self.phase == Phase::Device {
                 self.phase = Phase::Judge;
@@ -251,15 +255,24 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
     }
 
+    /// Enters what the device and the auditor cannot see.
     #[inline]
-    fn enter(&mut self, record: Record) -> Record {
-        let record = self.log.take(record);
-        self.script.notice(&record);
+    fn write(&mut self, record: &mut Record) {
+        self.log.number(record);
+        self.script.notice(record);
+    }
+
+    fn enter(&mut self, record: &mut Record) {
+        self.write(record);
         if record.kind.is_bench_visible()
             && let Some(auditor) = &mut self.auditor
         {
-            auditor.observe(&record);
+            auditor.observe(record);
         }
+    }
+
+    fn entered(&mut self, mut record: Record) -> Record {
+        self.enter(&mut record);
         record
     }
 
@@ -267,20 +280,16 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         self.phase = Phase::Script;
         let (low, high) = (self.seed & u64::from(u32::MAX), self.seed >> 32);
         let half = |part: u64| u32::try_from(part).unwrap_or(0);
-        self.enter(Record::new(self.now, Kind::Start, 0, Cause::NONE).with_details(half(low), half(high)))
+        self.entered(Record::new(self.now, Kind::Start, 0, Cause::NONE).with_details(half(low), half(high)))
     }
 
-    #[inline]
     fn run_script(&mut self) -> Option<Record> {
-        if !self.shows && self.script.next_at().is_none_or(|at| at > self.now) { None } else { self.next_step() }
-    }
-
-    fn next_step(&mut self) -> Option<Record> {
         // Several steps may show a signal in one instant: each goes out at once, before the next step.
         if core::mem::take(&mut self.shows)
-            && let Some(record) = self.lead.poll(self.now)
+            && let Some(mut record) = self.lead.poll(self.now)
         {
-            return Some(self.show(record));
+            self.show(&mut record);
+            return Some(record);
         }
         let cued = self.script.poll(self.now)?;
         // Nothing in the heart is due before now, so it takes every input.
@@ -288,7 +297,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         debug_assert!(taken.is_ok());
         let value = u32::try_from(cued.value.rem_euclid(1 << 32)).unwrap_or(0);
         let cause = Cause::new(CauseKind::Script, cued.step);
-        Some(self.enter(Record::new(self.now, Kind::Step, cued.step, cause).with_details(cued.turn, value)))
+        Some(self.entered(Record::new(self.now, Kind::Step, cued.step, cause).with_details(cued.turn, value)))
     }
 
     fn act(&mut self, cued: Cued) -> Result<(), NotYet> {
@@ -318,7 +327,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     }
 
     /// Shows the device a signal.
-    fn show(&mut self, record: Record) -> Record {
+    fn show(&mut self, record: &mut Record) {
         if let (Some(device), Some((channel, signal))) = (&mut self.device, record.as_signal())
             && device.signal(channel, signal, self.now).is_err()
         {
@@ -333,7 +342,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         if let Some(pulse) = self.pulse.take()
             && let Some(answer) = self.deliver(pulse)
         {
-            return Some(self.enter(answer));
+            return Some(self.entered(answer));
         }
         let (_, pulse) = self.device.as_mut()?.poll(self.now)?;
         self.pulses_now = self.pulses_now.saturating_add(1);
@@ -343,7 +352,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         }
         self.pulse = Some(pulse);
         // The bench's own stamp: what a device says of its instant is not evidence.
-        Some(self.enter(Record::pulse(self.now, pulse)))
+        Some(self.entered(Record::pulse(self.now, pulse)))
     }
 
     /// Brings a pulse to the tissue under its electrode; the record is that of a pulse without an answer.
@@ -363,10 +372,9 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     /// The next event, at the end of the time line if there is none.
     #[inline]
     fn next_event(&self) -> Instant {
-        let soonest = |one: Option<Instant>, other: Instant| one.map_or(other, |at| at.min(other));
-        let device = self.device.as_ref().and_then(Device::next_at);
-        let rest = soonest(self.lead.next_at(), soonest(device, Instant::MAX));
-        soonest(self.heart.next_at(), soonest(self.script.next_at(), rest))
+        let due = |next: Option<Instant>| next.unwrap_or(Instant::MAX);
+        let device = due(self.device.as_ref().and_then(Device::next_at));
+        due(self.heart.next_at()).min(due(self.lead.next_at())).min(due(self.script.next_at())).min(device)
     }
 
     /// Moves on to the next instant at or before `until`; false if there is none.
@@ -411,7 +419,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         if let Some(auditor) = &mut self.auditor {
             auditor.finish(self.now);
         }
-        self.enter(Record::new(self.now, Kind::End, 0, Cause::NONE).with_details(reason.number(), 0))
+        self.entered(Record::new(self.now, Kind::End, 0, Cause::NONE).with_details(reason.number(), 0))
     }
 }
 

@@ -24,6 +24,8 @@ pub struct Script<'a, const N: usize> {
 /// What any step waits for, a bit for each place: every other record is passed by.
 #[derive(Debug, Clone, Copy, Default)]
 struct Heard {
+    /// A bit for each kind's number.
+    kinds: u64,
     activated: u32,
     blocked: u32,
     not_captured: u32,
@@ -89,6 +91,12 @@ impl<'a, const N: usize> Script<'a, N> {
     /// When the next step acts, as far as is known now.
     pub const fn next_at(&self) -> Option<Instant> {
         self.next
+    }
+
+    /// True if a step acts at or before `now`.
+    #[inline]
+    pub(super) fn is_due(&self, now: Instant) -> bool {
+        self.next.is_some_and(|at| at <= now)
     }
 
     /// The next step due at or before `now`, earliest first, then in the order of the list.
@@ -208,12 +216,18 @@ impl Heard {
             let (kind, place) = event.trace();
             if let Some(places) = heard.places_mut(kind) {
                 *places |= bit(place);
+                heard.kinds |= 1_u64.wrapping_shl(word(kind.number()));
             }
         }
         heard
     }
 
+    #[inline]
     const fn has(&self, record: &Record) -> bool {
+        self.kinds & 1_u64.wrapping_shl(word(record.kind.number())) != 0 && self.has_place(record)
+    }
+
+    const fn has_place(&self, record: &Record) -> bool {
         let places = match record.kind {
             Kind::Activated => self.activated,
             Kind::Blocked => self.blocked,

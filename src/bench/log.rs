@@ -18,11 +18,17 @@ impl Log {
 
     /// Takes a record in: gives it the next number (modulo 2³²) and adds it to the hash.
     #[inline]
-    pub fn take(&mut self, record: Record) -> Record {
-        let record = Record { number: low_u32(self.count), ..record };
-        self.count = self.count.saturating_add(1);
-        self.hash.add(&record);
+    pub fn take(&mut self, mut record: Record) -> Record {
+        self.number(&mut record);
         record
+    }
+
+    /// The same in place.
+    #[inline]
+    pub(super) fn number(&mut self, record: &mut Record) {
+        record.number = low_u32(self.count);
+        self.count = self.count.saturating_add(1);
+        self.hash.add(record);
     }
 
     /// The hash of all records so far.

@@ -35,9 +35,9 @@ pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: us
     seen: Instant,
     /// When there is something to do next: `at` while this instant is not done with, else `due`.
     next: Instant,
-    /// The soonest of all due times below, and whose it is.
+    /// The soonest of all due times below; not so while `stale`.
     due: Instant,
-    slot: u8,
+    pub(super) stale: bool,
     // What is left of this instant: cells to be discharged by the activation just handed out, tracts whose first end fired and those
     // whose second end did, and a tract's second record.
     pub(super) resets: Rows,
@@ -56,6 +56,7 @@ pub struct Heart<'a, const S: usize, const T: usize, const C: usize, const F: us
     pub(super) shut_forward: Rows,
     pub(super) shut_backward: Rows,
     // Sites.
+    pub(super) captures: Rows,
     pub(super) fired: [Last; S],
     pub(super) causes: [Cause; S],
     pub(super) capture_channel: [u8; S],
@@ -106,7 +107,7 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
             seen: start,
             next: NEVER,
             due: NEVER,
-            slot: 0,
+            stale: false,
             resets: Rows::NONE,
             forward: Rows::NONE,
             backward: Rows::NONE,
@@ -120,6 +121,7 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
             passed: [Last::NEVER; T],
             shut_forward: Rows::NONE,
             shut_backward: Rows::NONE,
+            captures: Rows::NONE,
             fired: [Last::NEVER; S],
             causes: [Cause::NONE; S],
             capture_channel: [0; S],
@@ -153,6 +155,7 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
     }
 
     /// When the heart wants to be polled next, `None` if nothing will happen by itself. A compare and no more.
+    #[inline]
     pub fn next_at(&self) -> Option<Instant> {
         if self.next == NEVER { None } else { Some(self.next) }
     }
@@ -160,24 +163,41 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
     /// The next thing that happened at or before `now`; `None` when nothing more did.
     ///
     /// Bounded work: one micro-step and one record, plus the waves that set out in silence, at most one per tract end.
+    #[inline]
     pub fn poll(&mut self, now: Instant) -> Option<Record> {
         self.seen = self.seen.max(now);
         if self.next > self.seen || self.next == NEVER {
             return None;
         }
-        let record = self.step();
+        if self.resets.is_empty() { self.step() } else { self.discharge() }
+    }
+
+    /// A micro-step that is the discharge of a cell.
+    #[inline(never)]
+    fn discharge(&mut self) -> Option<Record> {
+        let row = self.resets.take_first()?;
+        let record = self.reset(CellId::new(row));
         self.next = self.upcoming();
         record
     }
 
+    /// Any other micro-step.
+    #[inline(never)]
     fn step(&mut self) -> Option<Record> {
+        let record = self.micro_step();
+        self.next = self.upcoming();
+        record
+    }
+
+    #[inline]
+    fn micro_step(&mut self) -> Option<Record> {
         if self.held.is_some() {
             return self.held.take();
         }
-        if let Some(row) = self.resets.take_first() {
-            return self.reset(CellId::new(row));
+        if self.stale {
+            self.find_soonest();
         }
-        // Second phase, once no site fires in this instant any more.
+        // Second phase, once no site fires in this instant any more. Waves that set out in silence make nothing stale.
         if self.due > self.at {
             while let Some(row) = self.forward.with(self.backward).take_first() {
                 if let Some(record) = self.decide(TractId::new(row)) {
@@ -188,63 +208,43 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
                 return None;
             }
         }
-        // First phase, of this instant or the next one.
-        self.at = self.due;
-        let Some(row) = self.slot.checked_sub(1) else { return self.beat_now() };
-        let Some(row) = row.checked_sub(Self::WAVES) else { return self.arrive(TractId::new(row)) };
-        let Some(row) = row.checked_sub(Self::CELLS) else { return self.expire(CellId::new(row)) };
-        let Some(row) = row.checked_sub(Self::FOCI) else { return self.fire_focus(FocusId::new(row)) };
-        self.capture_now(SiteId::new(row))
-    }
-
-    // Due times are numbered in the order in which they come within an instant: the script's beats 0, then waves, cells, foci, pulses.
-    const WAVES: u8 = rows(T);
-    const CELLS: u8 = rows(C);
-    const FOCI: u8 = rows(F);
-
-    pub(super) const fn wave_slot(id: TractId) -> u8 {
-        id.row().wrapping_add(1) // at most 1 + 4 · 32 in all
-    }
-
-    pub(super) const fn cell_slot(id: CellId) -> u8 {
-        id.row().wrapping_add(1).wrapping_add(Self::WAVES)
-    }
-
-    pub(super) const fn focus_slot(id: FocusId) -> u8 {
-        id.row().wrapping_add(1).wrapping_add(Self::WAVES).wrapping_add(Self::CELLS)
-    }
-
-    pub(super) const fn capture_slot(id: SiteId) -> u8 {
-        id.row().wrapping_add(1).wrapping_add(Self::WAVES).wrapping_add(Self::CELLS).wrapping_add(Self::FOCI)
-    }
-
-    pub(super) const BEAT_SLOT: u8 = 0;
-
-    /// Takes note that the due time of `slot` is now `to`. Everything is looked at again only where it was the soonest that moved.
-    pub(super) fn moved(&mut self, slot: u8, to: Instant) {
-        if slot == self.slot {
-            self.find_soonest();
-        } else if (to, slot) < (self.due, self.slot) {
-            (self.due, self.slot) = (to, slot);
+        // First phase, of this instant or the next one, each kind in the order of its table.
+        let at = self.due;
+        self.at = at;
+        if self.beat_due == at {
+            return self.beat_now();
         }
+        if let Some(row) = first_at(&self.wave_due, at) {
+            return self.arrive(TractId::new(row));
+        }
+        if let Some(row) = first_at(&self.cell_due, at) {
+            return self.expire(CellId::new(row));
+        }
+        if let Some(row) = first_at(&self.focus_due, at) {
+            return self.fire_focus(FocusId::new(row));
+        }
+        self.capture_now(SiteId::new(first_at(&self.capture_due, at)?))
     }
 
-    /// The soonest due time, and of several the first in order.
+    /// Takes note that a due time that was `was` is now `to`. Everything is looked at again only where it may have been the soonest
+    /// that moved, and not before that is asked for.
+    #[inline]
+    pub(super) fn moved(&mut self, was: Instant, to: Instant) {
+        self.stale |= was == self.due;
+        self.due = self.due.min(to);
+    }
+
+    /// The same for one that was not due at all.
+    #[inline]
+    pub(super) fn aimed(&mut self, to: Instant) {
+        self.due = self.due.min(to);
+    }
+
     fn find_soonest(&mut self) {
-        let (mut due, mut slot, mut looked_at) = (self.beat_due, Self::BEAT_SLOT, 0_u8);
-        let mut look = |times: &[Instant]| {
-            for &time in times {
-                looked_at = looked_at.wrapping_add(1);
-                if time < due {
-                    (due, slot) = (time, looked_at);
-                }
-            }
-        };
-        look(&self.wave_due);
-        look(&self.cell_due);
-        look(&self.focus_due);
-        look(&self.capture_due);
-        (self.due, self.slot) = (due, slot);
+        let soonest = |times: &[Instant], least: Instant| times.iter().fold(least, |least, &due| least.min(due));
+        let due = soonest(&self.focus_due, soonest(&self.cell_due, soonest(&self.wave_due, self.beat_due)));
+        self.due = if self.captures.is_empty() { due } else { soonest(&self.capture_due, due) };
+        self.stale = false;
     }
 
     /// Finds again what is to be done next, after an input has changed something.
@@ -253,14 +253,19 @@ impl<'a, const S: usize, const T: usize, const C: usize, const F: usize> Heart<'
         self.next = self.upcoming();
     }
 
-    const fn upcoming(&self) -> Instant {
-        let waiting = self.resets.with(self.forward).with(self.backward);
-        if waiting.is_empty() && self.held.is_none() { self.due } else { self.at }
+    fn upcoming(&mut self) -> Instant {
+        if !self.resets.with(self.forward).with(self.backward).is_empty() || self.held.is_some() {
+            return self.at;
+        }
+        if self.stale {
+            self.find_soonest();
+        }
+        self.due
     }
 }
 
-/// The rows of a table, which construction has found to be at most 32.
-#[allow(clippy::as_conversions, reason = "at most 32")]
-const fn rows(count: usize) -> u8 {
-    count as u8
+/// The first row that is due at this instant.
+#[inline]
+fn first_at(times: &[Instant], at: Instant) -> Option<u8> {
+    times.iter().zip(0_u8..).find(|&(&due, _)| due == at).map(|(_, row)| row)
 }

@@ -14,29 +14,31 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     /// A wave reaches the end of its tract.
     pub(super) fn arrive(&mut self, id: TractId) -> Option<Record> {
         let row = usize::from(id.row());
+        let at = self.at;
         let tract = self.anatomy.tract(id)?;
-        let crossing = *self.crossings.get(row)?;
+        let crossing = self.crossings.get(row)?;
+        let (direction, pass_at, cause) = (crossing.direction, crossing.pass_at, crossing.cause);
         *self.wave_due.get_mut(row)? = NEVER;
-        self.moved(Self::wave_slot(id), NEVER);
+        self.stale = true;
         let passed = self.passed.get_mut(row)?;
-        *passed = (*passed).max(super::last::Last::at(crossing.pass_at));
-        let (site, end) = match crossing.direction {
+        *passed = (*passed).max(super::last::Last::at(pass_at));
+        let (site, end) = match direction {
             Direction::Forward => (tract.to, &mut self.backward),
             Direction::Backward => (tract.from, &mut self.forward),
         };
         let fired = *self.fired.get(usize::from(site.row()))?;
-        if fired.is(self.at) {
+        if fired.is(at) {
             // It joins, and no wave goes back the way it came.
             *end = end.without(Rows::one(id.row()));
             let cause = *self.causes.get(usize::from(site.row()))?;
-            return Some(Record::new(self.at, Kind::Joined, id.row(), cause));
+            return Some(Record::new(at, Kind::Joined, id.row(), cause));
         }
-        let since = fired.since(self.at);
+        let since = fired.since(at);
         if self.anatomy.site(site)?.is_refractory(since) {
-            return Some(self.blocked(id, crossing.direction, BlockReason::Site, since, crossing.cause));
+            return Some(self.blocked(id, direction, BlockReason::Site, since, cause));
         }
         let record = self.activate(site, Cause::new(CauseKind::Conducted, id.row()));
-        let end = match crossing.direction {
+        let end = match direction {
             Direction::Forward => &mut self.backward,
             Direction::Backward => &mut self.forward,
         };
@@ -71,9 +73,9 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
             (self.anatomy.cell(id), self.fine_due.get_mut(row), self.cell_due.get_mut(row))
         {
             *fine = from.plus(cell.interval);
-            *due = fine.nearest();
-            let due = *due;
-            self.moved(Self::cell_slot(id), due);
+            let to = fine.nearest();
+            let was = core::mem::replace(due, to);
+            self.moved(was, to);
         }
     }
 
@@ -93,7 +95,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         else {
             return;
         };
-        *due = NEVER;
+        let was = core::mem::replace(due, NEVER);
         if let FocusKind::Replay { intervals, repeat, .. } = focus.kind {
             let at = |position: u32| usize::try_from(position).ok().and_then(|position| intervals.get(position));
             let begin = if repeat { 0 } else { *progress };
@@ -106,8 +108,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
                 *progress = position.saturating_add(1);
             }
         }
-        let due = *due;
-        self.moved(Self::focus_slot(id), due);
+        let to = *due;
+        self.moved(was, to);
     }
 
     /// The first of the script's beats of this instant.
@@ -115,7 +117,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         let site = SiteId::new(self.beats.take_first()?);
         if self.beats.is_empty() {
             self.beat_due = NEVER;
-            self.moved(Self::BEAT_SLOT, NEVER);
+            self.stale = true;
         }
         let cause = *self.beat_causes.get(usize::from(site.row()))?;
         self.fire(site, cause)
@@ -125,7 +127,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     pub(super) fn capture_now(&mut self, site: SiteId) -> Option<Record> {
         let row = usize::from(site.row());
         *self.capture_due.get_mut(row)? = NEVER;
-        self.moved(Self::capture_slot(site), NEVER);
+        self.captures = self.captures.without(Rows::one(site.row()));
+        self.stale = true;
         let cause = Cause::new(CauseKind::Pulse, *self.capture_channel.get(row)?);
         let since = self.fired.get(row)?.since(self.at);
         // Not answered if the site fired at the leading edge either: had it done so before the pulse, that would have found it refractory.
@@ -149,7 +152,8 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     /// A site fires: its cells are to be discharged, foci may count it, and waves are to set out.
     fn activate(&mut self, site: SiteId, cause: Cause) -> Option<Record> {
         let row = usize::from(site.row());
-        *self.fired.get_mut(row)? = super::last::Last::at(self.at);
+        let at = self.at;
+        *self.fired.get_mut(row)? = super::last::Last::at(at);
         *self.causes.get_mut(row)? = cause;
         let links = self.anatomy.links(site)?;
         self.resets = links.cells.and(self.running);
@@ -158,7 +162,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         if F > 0 {
             self.count_trigger(site, cause);
         }
-        Some(Record::new(self.at, Kind::Activated, site.row(), cause))
+        Some(Record::new(at, Kind::Activated, site.row(), cause))
     }
 
     /// Premature foci that wait for this site count its activation.
@@ -176,7 +180,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
                 *count = 0;
                 let fires_at = self.at.saturating_add(coupling);
                 *due = fires_at;
-                self.moved(Self::focus_slot(FocusId::new(row)), fires_at);
+                self.aimed(fires_at);
             }
         }
     }

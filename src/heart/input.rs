@@ -55,6 +55,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         }
         *due = fires_at;
         *channel = pulse.channel.number();
+        self.captures = self.captures.with(Rows::one(site.row()));
         self.refresh();
         Ok(PulseAnswer::Captured { due: fires_at })
     }

@@ -2,7 +2,7 @@
 
 use super::Heart;
 use super::engine::{Crossing, NEVER};
-use super::gate::{Fate, Flight, Gate};
+use super::gate::{Fate, Flight, Gate, enters_freely};
 use super::rows::Rows;
 use super::way::Direction;
 use crate::base::{Cause, Kind, Record, SiteId, TractId};
@@ -13,6 +13,21 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         let row = usize::from(id.row());
         let (here, forward, backward) = (Rows::one(id.row()), self.forward, self.backward);
         (self.forward, self.backward) = (forward.without(here), backward.without(here));
+        let (forward, backward) = (forward.has(id.row()), backward.has(id.row()));
+        let shut = if backward { self.shut_backward } else { self.shut_forward };
+        if *self.wave_due.get(row)? == NEVER && forward != backward && !shut.has(id.row()) {
+            let direction = if backward { Direction::Backward } else { Direction::Forward };
+            if let Some(flight) = enters_freely(self.anatomy.tract(id)?, direction, *self.passed.get(row)?, self.at) {
+                return self.enter(id, flight);
+            }
+        }
+        self.decide_by_the_gate(id, forward, backward)
+    }
+
+    /// Everything but a single wave at an open and empty tract.
+    #[inline(never)]
+    fn decide_by_the_gate(&mut self, id: TractId, forward: bool, backward: bool) -> Option<Record> {
+        let row = usize::from(id.row());
         let due = *self.wave_due.get(row)?;
         let Crossing { pass_at, took, direction, .. } = *self.crossings.get(row)?;
         let gate = Gate {
@@ -23,11 +38,6 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
             shut_forward: self.shut_forward.has(id.row()),
             shut_backward: self.shut_backward.has(id.row()),
         };
-        let (forward, backward) = (forward.has(id.row()), backward.has(id.row()));
-        // By far the most frequent case, taken apart from the rest because that has more to carry around.
-        if let Some(flight) = gate.enters_freely(forward, backward, self.at) {
-            return self.enter(id, flight);
-        }
         let decided = gate.decide(forward, backward, self.at);
         *self.passed.get_mut(row)? = decided.passed;
         let first = decided.first.and_then(|fate| self.settle(id, fate));
@@ -40,13 +50,14 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
     }
 
     /// A wave sets out, in silence.
+    #[inline]
     fn enter(&mut self, id: TractId, flight: Flight) -> Option<Record> {
         let Flight { direction, due, pass_at, took } = flight;
         let row = usize::from(id.row());
         let cause = self.mouth_cause(id, direction)?;
         *self.wave_due.get_mut(row)? = due;
         *self.crossings.get_mut(row)? = Crossing { pass_at, took, direction, cause };
-        self.moved(Self::wave_slot(id), due);
+        self.aimed(due);
         None
     }
 
@@ -57,8 +68,9 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
                 Some(self.blocked(id, direction, reason, recovery, self.mouth_cause(id, direction)?))
             }
             Fate::Meets(meeting) => {
-                *self.wave_due.get_mut(usize::from(id.row()))? = NEVER;
-                self.moved(Self::wave_slot(id), NEVER);
+                let due = self.wave_due.get_mut(usize::from(id.row()))?;
+                let was = core::mem::replace(due, NEVER);
+                self.moved(was, NEVER);
                 let newcomer = if meeting.backward { Direction::Backward } else { Direction::Forward };
                 let (a, b) = meeting.pack();
                 Some(Record::new(self.at, Kind::Collided, id.row(), self.mouth_cause(id, newcomer)?).with_details(a, b))

@@ -1,7 +1,7 @@
 //! The leads: what the device is shown of the heart, and where its pulses arrive.
 
 use super::{ChannelParams, LeadChange, LeadParams, NearField};
-use crate::base::{Cause, Channel, Instant, Kind, MicroVolts, NotYet, ParamError, Record, Signal, SiteId, Span};
+use crate::base::{Cause, Channel, Instant, Kind, MicroVolts, NotYet, ParamError, Record, Signal, SiteId, Span, word};
 
 /// The leads between heart and device: activations in, signals out.
 ///
@@ -16,6 +16,8 @@ use crate::base::{Cause, Channel, Instant, Kind, MicroVolts, NotYet, ParamError,
 pub struct Lead {
     /// Atrial, ventricular.
     channels: [Option<ChannelParams>; 2],
+    /// Sites at which one of them senses, a bit each; a site from 32 on shares one.
+    sensed: u32,
     /// When the next signal comes: the least of `due`.
     next: Instant,
     /// When the signal in each slot comes, in the order in which equal onsets come out.
@@ -57,18 +59,25 @@ impl Lead {
         }
         let empty = Record::new(NEVER, Kind::Signal, 0, Cause::NONE);
         let channels = [params.atrial, params.ventricular];
-        Ok(Self { channels, next: NEVER, due: [NEVER; 4], slots: [empty; 4], overtaken: 0 })
+        let sensed = bit_of(&params.atrial) | bit_of(&params.ventricular);
+        Ok(Self { channels, sensed, next: NEVER, due: [NEVER; 4], slots: [empty; 4], overtaken: 0 })
     }
 
     /// Takes note of an activation ([`Kind::Activated`]); any other record is ignored. Each channel that senses at its site
     /// will show its near field `delay` later, with the activation's cause.
+    #[inline]
     pub fn activated(&mut self, record: &Record) {
-        if record.kind != Kind::Activated {
-            return;
+        if record.kind == Kind::Activated && self.sensed & bit(record.place) != 0 {
+            self.sense(record);
         }
+    }
+
+    fn sense(&mut self, record: &Record) {
         let site = SiteId::new(record.place);
-        for (channel, params) in Channel::ALL.into_iter().zip(self.channels) {
-            let Some(ChannelParams { sense, near: NearField { peak, delay, width }, .. }) = params else { continue };
+        for channel in Channel::ALL {
+            let Some(ChannelParams { sense, near: NearField { peak, delay, width }, .. }) = *self.params(channel) else {
+                continue;
+            };
             if sense == site {
                 let onset = record.at.saturating_add(delay);
                 let shown = Record::signal(onset, channel, Signal { peak, width }, record.cause);
@@ -113,14 +122,17 @@ impl Lead {
 
     /// The site that this channel's pulses reach, `None` if it is not connected.
     pub const fn pace_site(&self, channel: Channel) -> Option<SiteId> {
-        let [atrial, ventricular] = &self.channels;
-        let params = match channel {
-            Channel::Atrial => atrial,
-            Channel::Ventricular => ventricular,
-        };
-        match params {
+        match self.params(channel) {
             Some(params) => Some(params.pace),
             None => None,
+        }
+    }
+
+    const fn params(&self, channel: Channel) -> &Option<ChannelParams> {
+        let [atrial, ventricular] = &self.channels;
+        match channel {
+            Channel::Atrial => atrial,
+            Channel::Ventricular => ventricular,
         }
     }
 
@@ -161,6 +173,17 @@ impl Lead {
         *place = record;
         self.next = if overtakes { self.due.iter().fold(NEVER, |least, &due| least.min(due)) } else { self.next.min(record.at) };
         overtakes
+    }
+}
+
+const fn bit(site: u8) -> u32 {
+    1_u32.wrapping_shl(word(site))
+}
+
+const fn bit_of(params: &Option<ChannelParams>) -> u32 {
+    match params {
+        Some(params) => bit(params.sense.row()),
+        None => 0,
     }
 }
 

@@ -18,9 +18,10 @@ fn micros<M: Model>(cx: &Context<M>) -> u64 {
     cx.time().duration_since(MonotonicTime::EPOCH).as_micros() as u64
 }
 
-#[derive(Serialize, Deserialize, Default)]
+#[derive(Serialize, Deserialize)]
 struct SinusNode {
     wave: Output<()>,
+    blocked: u64,
 }
 
 #[Model]
@@ -32,28 +33,28 @@ impl SinusNode {
 
     #[nexosim(schedulable)]
     async fn fire(&mut self) {
-        self.wave.send(()).await;
+        self.blocked -= 1;
+        if self.blocked == 0 {
+            self.blocked = BLOCKED;
+        } else {
+            self.wave.send(()).await;
+        }
     }
 }
 
-#[derive(Serialize, Deserialize)]
+#[derive(Serialize, Deserialize, Default)]
 struct AvNode {
     wave: Output<()>,
     left_at: Option<u64>,
-    blocked: u64,
 }
 
 #[Model]
 impl AvNode {
+    /// A wave from the sinus node reaches the atrium after the link's delay, and the node with it.
     async fn enter(&mut self, _: (), cx: &Context<Self>) {
-        self.blocked -= 1;
-        if self.blocked == 0 {
-            self.blocked = BLOCKED;
-            return;
-        }
-        let recovery = self.left_at.map(|left| (micros(cx) - left) as f64);
+        let recovery = self.left_at.map(|left| (micros(cx) + LINK - left) as f64);
         let more = recovery.map_or(0.0, |recovery| 780_000.0 * (-recovery / 110_000.0).exp());
-        let delay = us(NODE_BASE + more.round() as u64);
+        let delay = us(LINK + NODE_BASE + more.round() as u64);
         cx.schedule_event(delay, schedulable!(Self::leave), ()).expect("in the future");
     }
 
@@ -173,8 +174,8 @@ impl Device {
 /// # Errors
 /// Whatever the engine reports.
 pub fn run(until: u64) -> Result<Tally, SimulationError> {
-    let mut sinus = SinusNode::default();
-    let mut node = AvNode { wave: Output::default(), left_at: None, blocked: BLOCKED };
+    let mut sinus = SinusNode { wave: Output::default(), blocked: BLOCKED };
+    let mut node = AvNode::default();
     let mut ventricle = Ventricle::default();
     let mut escape = EscapeCell::default();
     let mut device = Device::default();

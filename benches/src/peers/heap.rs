@@ -41,28 +41,29 @@ const VENTRICLE: usize = 2;
 const ESCAPE_CELL: usize = 3;
 const DEVICE: usize = 4;
 
-struct SinusNode;
+struct SinusNode {
+    blocked: u64,
+}
 
 impl Component for SinusNode {
     fn receive(&mut self, _: Message, now: u64, engine: &mut Engine) {
-        engine.send(now, AV_NODE, Message::Wave);
+        self.blocked -= 1;
+        if self.blocked == 0 {
+            self.blocked = BLOCKED;
+        } else {
+            engine.send(now + LINK, AV_NODE, Message::Wave);
+        }
         engine.send(now + SINUS, SINUS_NODE, Message::Timer(0));
     }
 }
 
 struct AvNode {
     left_at: Option<u64>,
-    blocked: u64,
 }
 
 impl Component for AvNode {
     fn receive(&mut self, message: Message, now: u64, engine: &mut Engine) {
         if message == Message::Wave {
-            self.blocked -= 1;
-            if self.blocked == 0 {
-                self.blocked = BLOCKED;
-                return;
-            }
             let more = self.left_at.map_or(0.0, |left| 780_000.0 * (-((now - left) as f64) / 110_000.0).exp());
             engine.send(now + NODE_BASE + more.round() as u64, AV_NODE, Message::Timer(0));
         } else {
@@ -143,8 +144,8 @@ pub fn run(until: u64) -> Tally {
     let beats = Rc::new(RefCell::new(Tally::default()));
     let mut engine = Engine::default();
     let mut components: [Box<dyn Component>; 5] = [
-        Box::new(SinusNode),
-        Box::new(AvNode { left_at: None, blocked: BLOCKED }),
+        Box::new(SinusNode { blocked: BLOCKED }),
+        Box::new(AvNode { left_at: None }),
         Box::new(Ventricle { ready: 0, beats: Rc::clone(&beats) }),
         Box::new(EscapeCell(Timer::default())),
         Box::new(Device { timer: Timer::default(), blind_until: 0 }),
@@ -155,6 +156,5 @@ pub fn run(until: u64) -> Tally {
     while let Some(Reverse((now, _, to, message))) = engine.queue.pop().filter(|Reverse((now, ..))| *now < until) {
         components[to].receive(message, now, &mut engine);
     }
-    let beats = *beats.borrow();
-    beats
+    *beats.borrow()
 }

@@ -41,7 +41,8 @@ fn events(until: u64, delay: impl Fn(u64) -> u64, mut on_beat: impl FnMut(u64)) 
             if blocked == 0 {
                 blocked = BLOCKED;
             } else {
-                conducted = now + left_node.map_or(NODE_BASE, |left| delay(now - left));
+                let atrium = now + LINK;
+                conducted = atrium + left_node.map_or(NODE_BASE, |left| delay(atrium - left));
             }
         } else if now == conducted {
             conducted = NEVER;
@@ -79,7 +80,8 @@ pub fn float_throughout(until: u64, mut on_beat: impl FnMut(f64)) {
             if blocked == 0 {
                 blocked = BLOCKED;
             } else {
-                conducted = now + 90.0 + 780.0 * ((left_node - now) / 110.0).exp();
+                let atrium = now + 0.001;
+                conducted = atrium + 90.0 + 780.0 * ((left_node - atrium) / 110.0).exp();
             }
         } else if now == conducted {
             conducted = f64::INFINITY;
