@@ -36,12 +36,6 @@ pub fn page(run: &RunData) -> String {
     page::lay_out(run).into_string()
 }
 
-/// The verdict of a run in one line, as the page words it: a word and a sentence, in plain spaces and signs.
-pub fn verdict_line(run: &RunData) -> String {
-    let words = wording::headline(&facts::Facts::read(run));
-    format!("{}. {}", words.word, words.sentence).replace(number::THIN, " ").replace('\u{2212}', "-")
-}
-
 /// How many rules could have been tried under the run's program and were not.
 pub fn untried(run: &RunData) -> usize {
     applies::applying(run).filter(|(_, score)| score.checked == 0).count()

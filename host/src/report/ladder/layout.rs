@@ -24,6 +24,8 @@ pub(super) struct Tier {
     pub(super) shape: TractShape,
     pub(super) top: f64,
     pub(super) bottom: f64,
+    /// True if it stands beside the chain, with borders of its own.
+    pub(super) beside: bool,
 }
 
 impl Tier {
@@ -93,7 +95,9 @@ pub(super) struct Layout {
     /// Upper and lower end of the heart.
     pub(super) heart: (f64, f64),
     pub(super) height: f64,
+    /// Names of sites and of tracts.
     names: Vec<String>,
+    tract_names: Vec<String>,
 }
 
 impl Layout {
@@ -115,8 +119,10 @@ impl Layout {
         let bottom = tiers.iter().map(|tier| tier.bottom).fold(top, f64::max);
         let below = has(Channel::Ventricular).then(|| block(Channel::Ventricular, bottom, 1.0));
         let height = below.map_or(bottom + 14.0, |block| block.edge + block.height());
-        let names = facts.run.names.sites.iter().map(|name| capital(&short(name, 14))).collect();
-        Self { sites: sites(&tiers), tiers, above, below, heart: (top, bottom), height, names }
+        let fit = |names: &[String]| names.iter().map(|name| short(name, 14)).collect::<Vec<_>>();
+        let names = fit(&facts.run.names.sites).iter().map(|name| capital(name)).collect();
+        let tract_names = fit(&facts.run.names.tracts);
+        Self { sites: sites(&tiers), tiers, above, below, heart: (top, bottom), height, names, tract_names }
     }
 
     pub(super) fn blocks(&self) -> impl Iterator<Item = &Block> {
@@ -137,6 +143,11 @@ impl Layout {
             svg.line("tier", (86.0, *y), (100.0, *y));
             let name = self.names.get(usize::from(*site)).cloned().unwrap_or_else(|| format!("Site {site}"));
             svg.text("bold", (10.0, y + 4.0), Anchor::Start, &name);
+        }
+        for tier in self.tiers.iter().filter(|tier| tier.beside) {
+            if let Some(name) = self.tract_names.get(usize::from(tier.tract)) {
+                svg.text("t2", (10.0, tier.y(0.5) + 4.0), Anchor::Start, name);
+            }
         }
         for block in self.blocks() {
             let letter = if block.channel == Channel::Atrial { "A" } else { "V" };
@@ -166,9 +177,9 @@ fn tiers(tracts: &[TractShape], top_site: u8, top: f64) -> Vec<Tier> {
     let slowest = chain.iter().copied().rev().max_by_key(delay);
     let mut tiers = Vec::new();
     let mut y = top;
-    let mut add = |row: usize, y: f64, height: f64| {
+    let mut add = |row: usize, y: f64, height: f64, beside: bool| {
         if let (Some(shape), Ok(tract)) = (tracts.get(row), u8::try_from(row)) {
-            tiers.push(Tier { tract, shape: *shape, top: y, bottom: y + height });
+            tiers.push(Tier { tract, shape: *shape, top: y, bottom: y + height, beside });
         }
     };
     for (place, row) in chain.iter().enumerate() {
@@ -178,12 +189,12 @@ fn tiers(tracts: &[TractShape], top_site: u8, top: f64) -> Vec<Tier> {
             _ if place + 1 == chain.len() => 48.0,
             _ => 32.0,
         };
-        add(*row, y, height);
+        add(*row, y, height, false);
         y += height;
     }
     for row in (0..tracts.len()).filter(|row| !chain.contains(row)).take(MOST_BESIDE) {
         y += 26.0;
-        add(row, y, 48.0);
+        add(row, y, 48.0, true);
         y += 48.0;
     }
     tiers

@@ -26,7 +26,7 @@ pub(super) fn pins(facts: &Facts<'_>, width: f64, class: &str) -> Markup {
 
 /// The row to which a pin leads: its first finding, or the last that has a row.
 fn link(facts: &Facts<'_>, first: usize, last: usize) -> usize {
-    let rows = super::super::findings::rows(facts);
+    let rows = crate::report::findings::rows(facts);
     rows.iter().copied().find(|number| (first..=last).contains(number)).or_else(|| rows.last().copied()).unwrap_or(first)
 }
 

@@ -34,35 +34,30 @@ pub(super) fn are_small(series: &Series) -> bool {
 }
 
 /// Draws the marks of a plot.
-#[derive(Debug)]
-pub(super) struct Marks;
-
-impl Marks {
-    pub(super) fn draw(series: &Series, axis: &Axis) -> Svg {
-        let mut svg = Svg::new();
-        let x = |entry: &Entry| (entry.number as f64 - 0.5) / series.length.max(1) as f64 * WIDTH;
-        let small = if are_small(series) { " s" } else { "" };
-        let of = |look| series.entries.iter().filter(move |entry| entry.look == look);
-        if series.entries.len() > MOST_SINGLE {
-            columns(&mut svg, series, axis, x);
-        } else {
-            let path = |look| points(of(look).map(|entry| (x(entry), axis.y(entry.value))));
-            let rings = path(Look::Beat);
-            svg.raw_path(&format!("ns m1{small}"), &rings);
-            if small.is_empty() {
-                svg.raw_path("ns m2", &rings);
-            }
-            svg.raw_path(&format!("ns m3{small}"), &path(Look::Pulse));
+pub(super) fn draw(series: &Series, axis: &Axis) -> Svg {
+    let mut svg = Svg::new();
+    let x = |entry: &Entry| (entry.number as f64 - 0.5) / series.length.max(1) as f64 * WIDTH;
+    let small = if are_small(series) { " s" } else { "" };
+    let of = |look| series.entries.iter().filter(move |entry| entry.look == look);
+    if series.entries.len() > MOST_SINGLE {
+        columns(&mut svg, series, axis, x);
+    } else {
+        let path = |look| points(of(look).map(|entry| (x(entry), axis.y(entry.value))));
+        let rings = path(Look::Beat);
+        svg.raw_path(&format!("ns m1{small}"), &rings);
+        if small.is_empty() {
+            svg.raw_path("ns m2", &rings);
         }
-        for (look, outer, inner) in [(Look::Undecided, "ns q1", Some("ns q2")), (Look::Broken, "ns q3", None)] {
-            let marks = thinned(of(look).map(|entry| (x(entry), axis.y(entry.value))).collect());
-            svg.raw_path(outer, &marks);
-            if let Some(inner) = inner {
-                svg.raw_path(inner, &marks);
-            }
-        }
-        svg
+        svg.raw_path(&format!("ns m3{small}"), &path(Look::Pulse));
     }
+    for (look, outer, inner) in [(Look::Undecided, "ns q1", Some("ns q2")), (Look::Broken, "ns q3", None)] {
+        let marks = thinned(of(look).map(|entry| (x(entry), axis.y(entry.value))).collect());
+        svg.raw_path(outer, &marks);
+        if let Some(inner) = inner {
+            svg.raw_path(inner, &marks);
+        }
+    }
+    svg
 }
 
 /// Points that a round or square cap makes visible.

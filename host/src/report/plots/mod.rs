@@ -8,7 +8,6 @@ mod series;
 use super::facts::Facts;
 use super::number::{count, ms_bare, ms_tenth, signed_limit, signed_tenth};
 use axis::Axis;
-use marks::Marks;
 use maud::{Markup, PreEscaped, html};
 use phase4::base::{Deviation, Span};
 use series::{Entry, Series};
@@ -94,7 +93,7 @@ struct Figure<'a> {
 }
 
 fn figure(figure: &Figure<'_>, under: &super::svg::Svg, series: &Series) -> Markup {
-    let marks = Marks::draw(series, figure.axis);
+    let marks = marks::draw(series, figure.axis);
     let (bars, counts) = histogram::draw(series, figure.axis);
     let height = figure.height;
     let style = format!("height:{height}px");

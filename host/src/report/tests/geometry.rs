@@ -1,9 +1,10 @@
 //! The drawings as geometry: nothing outside its frame, no words over words, no finding lost.
 
-use super::reading::{Drawing, Mark, drawings, ladders};
+use super::reading::{Drawing, Mark, drawings, ladders, text};
 use super::support::{long, shipped, vvi, written};
 use crate::report::page;
-use crate::run_data::RunData;
+use crate::run_data::{RunData, TractShape};
+use phase4::base::Span;
 use proptest::prelude::*;
 
 /// Room for strokes and for rounding to a tenth of a pixel.
@@ -135,6 +136,36 @@ fn findings_named(words: &str) -> usize {
         Some((from, to)) => to.parse::<usize>().unwrap_or(0) + 1 - from.parse::<usize>().unwrap_or(0),
         None => 1,
     }
+}
+
+#[test]
+fn a_log_without_causes_draws_no_heart_and_says_so() {
+    let mut run = faulty(16, "20 s");
+    run.records.retain(|record| record.kind.is_bench_visible());
+    check(&run, "no causes");
+    let page = page(&run);
+    for ladder in ladders(&page) {
+        assert!(!ladder.marks.iter().any(|mark| ["wave", "hid", "org"].contains(&mark.class.as_str())));
+        assert!(ladder.marks.iter().any(|mark| mark.class == "lensf"), "what the bench sees is still drawn");
+    }
+    assert!(text(&page).contains("The log holds no causes, so the heart is not drawn"));
+}
+
+#[test]
+fn tracts_beside_the_chain_have_tiers_of_their_own() {
+    let mut run = written("[run]\nlength = \"5 s\"\n[heart]\nsinus = \"60 /min\"\n");
+    let chain = ladders(&page(&run)).remove(0);
+    let accessory =
+        TractShape { from: 1, to: 3, gate: 0.0, forward_base: Span::from_millis(300), backward_base: Span::from_millis(300) };
+    run.tracts.push(accessory);
+    run.names.tracts.push("bypass".to_owned());
+    check(&run, "a bypass");
+    let beside = ladders(&page(&run)).remove(0);
+    let borders = |ladder: &Drawing| ladder.marks.iter().filter(|mark| mark.class == "tier").count();
+    assert_eq!(borders(&beside), borders(&chain) + 2);
+    assert!(beside.view[3] > chain.view[3]);
+    let names = drawings(&page(&run)).into_iter().find(|drawing| drawing.class == "lab").unwrap();
+    assert!(names.marks.iter().any(|mark| mark.words == "bypass"));
 }
 
 #[test]

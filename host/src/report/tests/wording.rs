@@ -1,7 +1,6 @@
 //! The verdict in words, for every sort of verdict.
 
 use super::support::{long, shipped, vvi, written};
-use crate::report::verdict_line;
 use crate::report::wording::headline;
 use crate::report::{facts::Facts, number::THIN};
 use crate::run_data::{RunData, Verdict};
@@ -81,13 +80,6 @@ fn unjudged_says_why() {
     let idle =
         written("[run]\nlength = \"5 s\"\n[heart]\nsinus = \"75 /min\"\n[device]\nmode = \"OOO\"\nlower_rate = \"60 /min\"\n");
     assert_eq!(said(&idle).0, "Unjudged. The device is set to OOO, which does nothing that could be judged.");
-}
-
-#[test]
-fn the_line_for_a_terminal_has_plain_spaces_and_signs() {
-    let line = verdict_line(&long(80, 8));
-    assert_eq!(line, "Broken. Corncrake-3 broke LR1 10 times, by up to 23.1 ms.");
-    assert!(line.is_ascii());
 }
 
 #[test]

@@ -74,7 +74,7 @@ fn by_rules(facts: &Facts<'_>, broken: &[&Case]) -> String {
             let score = facts.run.scores.iter().find(|(other, _)| other == rule).map(|(_, score)| *score).unwrap_or_default();
             let decided = u64::from(score.held) + u64::from(score.broken);
             let out_of = if decided >= *number as u64 {
-                format!(" out of {}", super::super::number::count(decided))
+                format!(" out of {}", crate::report::number::count(decided))
             } else {
                 String::new()
             };
@@ -121,7 +121,7 @@ fn tell_worst(facts: &Facts<'_>, case: &Case, opening: &str) -> String {
     let rule = judgement.rule.code();
     let pulse = judgement.seen.and_then(|seen| facts.pulse_at(judgement.channel, seen));
     let name = pulse
-        .map_or_else(|| "the pulse".to_owned(), |(number, _)| format!("pulse {}", super::super::number::count(number as u64)));
+        .map_or_else(|| "the pulse".to_owned(), |(number, _)| format!("pulse {}", crate::report::number::count(number as u64)));
     let timed = judgement.deviation.filter(|_| judgement.how != How::Unexpected);
     match (judgement.seen, timed, judgement.window) {
         (Some(seen), Some(deviation), Some(window)) => {

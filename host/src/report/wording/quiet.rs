@@ -70,7 +70,7 @@ pub(super) fn undecided(facts: &Facts<'_>) -> Words {
         4 => format!("The run was stopped after {when}: more happened than the bench takes in."),
         _ if all == 0 => "Nothing could be judged.".to_owned(),
         _ if run.decided * 1_000 < asked * all => {
-            let wanted = super::super::number::ms_bare(Span::from_micros(asked * 100));
+            let wanted = crate::report::number::ms_bare(Span::from_micros(asked * 100));
             format!("Only {} of {} cases could be decided; {wanted} per cent were asked for.", count(run.decided), count(all))
         }
         _ => "Coverage that the scenario asks for was not reached.".to_owned(),
@@ -78,7 +78,7 @@ pub(super) fn undecided(facts: &Facts<'_>) -> Words {
     (
         sentence,
         most_frequent_hint(facts).map(|(hint, number)| {
-            format!("The most frequent reason, {}: {}", super::times(number), super::super::undecided::why(facts, hint))
+            format!("The most frequent reason, {}: {}", super::times(number), crate::report::undecided::why(facts, hint))
         }),
     )
 }
@@ -95,7 +95,7 @@ pub(super) fn void(facts: &Facts<'_>) -> Words {
     match &facts.run.canary {
         Some(canary) => (
             format!("The judge missed its own planted fault (no. {}), so nothing here counts.", canary.fault),
-            Some(format!("The fault was: {}.", super::super::text::short(&canary.line, 200).trim_end_matches('.'))),
+            Some(format!("The fault was: {}.", crate::report::text::short(&canary.line, 200).trim_end_matches('.'))),
         ),
         None => ("The judge could not be checked, so nothing here counts.".to_owned(), None),
     }
