@@ -115,7 +115,7 @@ impl<const S: usize, const T: usize, const C: usize, const F: usize> Heart<'_, S
         Ok(())
     }
 
-    /// Shuts a tract to waves that have not entered it yet. A wave that is stopped there conceals as its way says.
+    /// Shuts a tract to waves that have not entered it yet. What is stopped there counts as having passed.
     ///
     /// # Errors
     /// [`NotYet`] if something is due before `at`.
