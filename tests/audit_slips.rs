@@ -11,9 +11,11 @@
 
 mod judged;
 
-use judged::sloppy::{Kind, Slip, slipping};
+use judged::sloppy::{Kind, Script, Slip, slipping};
 use judged::{Finding, judge_with, scripts_or};
 use phase4::audit::{Auditor, Outcome, RuleId};
+use phase4::base::{Instant, Interval, Record};
+use phase4::device::{Device, ReferenceDevice};
 
 #[derive(Debug, Default)]
 struct Found {
@@ -100,4 +102,67 @@ fn hysteresis_after_a_pulse() {
 #[test]
 fn no_hysteresis_after_a_sense() {
     is_found(Slip::NoHysteresisAfterSense, &[RuleId::Hy1], 50, 100);
+}
+
+/// What an exact device would have emitted on the same signals, up to here.
+fn exact_pulses(script: &Script, until: Instant) -> Vec<Instant> {
+    let mut device = ReferenceDevice::new(script.program, script.start);
+    let mut pulses = Vec::new();
+    for record in &script.records {
+        if let Some((channel, signal)) = record.as_signal() {
+            while let Err(not_yet) = device.signal(channel, signal, record.at) {
+                pulses.extend(device.poll(not_yet.0).map(|(at, _)| at));
+            }
+        }
+    }
+    pulses.extend(core::iter::from_fn(|| device.poll(until)).map(|(at, _)| at));
+    pulses
+}
+
+/// Exact judging of an exact device is complete as well as sound: something is found if, and only if, the pulses are not those that an
+/// exact device emits on these signals. Programs of whole microseconds, so that no fraction is carried.
+#[test]
+fn an_exact_judge_finds_whatever_differs_and_nothing_else() {
+    let slips = [
+        None,
+        Some(Slip::Late(1)),
+        Some(Slip::Late(60_000)),
+        Some(Slip::Early(1)),
+        Some(Slip::Missing),
+        Some(Slip::Twice(3_000)),
+        Some(Slip::IgnoresSense),
+        Some(Slip::RestartsInRefractory),
+        Some(Slip::HysteresisAfterPulse),
+        Some(Slip::NoHysteresisAfterSense),
+    ];
+    let (mut same, mut different) = (0, 0);
+    for (seed, slip) in (0..scripts_or(3_000)).flat_map(|seed| slips.map(|slip| (seed, slip))) {
+        let script = slipping(seed, Kind::Exact, slip);
+        let set = script.program.settings();
+        let is_whole = |interval: Interval| interval.floor() == interval.ceil();
+        if !is_whole(set.lower) || !set.hysteresis.is_none_or(is_whole) {
+            continue;
+        }
+        let last = script.records.last().unwrap().at;
+        let pulses: Vec<_> = script.records.iter().filter(|record| record.as_pulse().is_some()).map(Record::clone).collect();
+        let (emitted, expected) = (pulses.iter().map(|pulse| pulse.at), exact_pulses(&script, last));
+        let agree = emitted.clone().zip(expected.iter().copied()).take_while(|(here, there)| here == there).count();
+        let first = [emitted.skip(agree).next(), expected.get(agree).copied()].into_iter().flatten().min();
+        let auditor = Auditor::<12>::new(&script.program, &script.settings, script.start).unwrap();
+        let (_, auditor) = judge_with(auditor, &script.records);
+        match first {
+            None => {
+                assert_eq!(auditor.broken(), 0, "{slip:?} in script {seed}\n{script}");
+                same += 1;
+            }
+            // A pulse due in the very last instant is not missing yet.
+            Some(at) if at < last => {
+                assert!(auditor.broken() > 0, "{slip:?} in script {seed}: pulses differ from {at:?}\n{script}");
+                different += 1;
+            }
+            Some(_) => {}
+        }
+    }
+    println!("{same} scripts as they must be, {different} that differ");
+    assert!(same > 3_000 && different > 3_000);
 }
