@@ -14,7 +14,7 @@ mod judged;
 use judged::sloppy::{Kind, Script, Slip, slipping};
 use judged::{Finding, judge_with, scripts_or};
 use phase4::audit::{Auditor, Outcome, RuleId};
-use phase4::base::{Instant, Interval, Record};
+use phase4::base::{Instant, Interval};
 use phase4::device::{Device, ReferenceDevice};
 
 #[derive(Debug, Default)]
@@ -144,10 +144,10 @@ fn an_exact_judge_finds_whatever_differs_and_nothing_else() {
             continue;
         }
         let last = script.records.last().unwrap().at;
-        let pulses: Vec<_> = script.records.iter().filter(|record| record.as_pulse().is_some()).map(Record::clone).collect();
-        let (emitted, expected) = (pulses.iter().map(|pulse| pulse.at), exact_pulses(&script, last));
-        let agree = emitted.clone().zip(expected.iter().copied()).take_while(|(here, there)| here == there).count();
-        let first = [emitted.skip(agree).next(), expected.get(agree).copied()].into_iter().flatten().min();
+        let pulses = script.records.iter().filter(|record| record.as_pulse().is_some());
+        let (emitted, expected): (Vec<_>, _) = (pulses.map(|pulse| pulse.at).collect(), exact_pulses(&script, last));
+        let agree = emitted.iter().zip(&expected).take_while(|(here, there)| here == there).count();
+        let first = [emitted.get(agree).copied(), expected.get(agree).copied()].into_iter().flatten().min();
         let auditor = Auditor::<12>::new(&script.program, &script.settings, script.start).unwrap();
         let (_, auditor) = judge_with(auditor, &script.records);
         match first {

@@ -256,6 +256,17 @@ fn a_day_does_not_drift() {
     }
 }
 
+/// A sense on its way when a pulse comes falls into that pulse's blanking; a signal after it that outlasts blanking is sensed none the less.
+#[test]
+fn a_sense_that_a_pulse_overtakes_hides_no_later_signal() {
+    let mut program = at(Mode::Vvi, 60);
+    (program.refractory, program.blanking, program.straddle, program.detect_delay) = (ms(250), ms(250), Straddle::End, ms(60));
+    let long = Signal { width: ms(240), ..LOUD };
+    // The first is detected at 1050, in the blanking of the pulse at 1000; the second ends at 1260 and is sensed at 1250.
+    let shown = [(Channel::Ventricular, LOUD, at_ms(990)), (Channel::Ventricular, long, at_ms(1_020))];
+    assert_eq!(pulses(program, &shown, 2_500), [1_000, 2_250]);
+}
+
 /// A scheduler in whole milliseconds is 7.2 s early after a day at 65 /min and 14.4 s early at 70 /min. Derived.
 #[test]
 fn a_whole_millisecond_scheduler_drifts_and_ours_does_not() {

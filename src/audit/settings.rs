@@ -23,7 +23,7 @@ impl Tolerance {
 }
 
 /// How measurement uncertainty enters a judgement. ISO/IEC 17025 wants the rule written down beside the result (checked: an
-/// article on its clause 7.8.6, not the text itself).
+/// article on its clause 7.8.6, not the text itself). Which of two events came first is left open within the uncertainty by both.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 pub enum Decision {
     /// Broken outside the limits, held inside.

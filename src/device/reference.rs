@@ -204,6 +204,11 @@ impl ReferenceDevice {
         self.state.emitted_at = Some(at);
         self.state.extra_at = self.hooks.paces_again_after.map(|later| at.saturating_add(later));
         self.react(Event::Pulse, due);
+        // A sense on its way that now falls into the pulse's own blanking must not keep later signals from being sensed.
+        if self.state.sense.is_some_and(|sense| self.row.on(self.classify(sense)).is_none()) {
+            self.state.sense = None;
+            self.refresh();
+        }
     }
 
     /// The expiry passes unnoticed, and the timer runs for another interval.
