@@ -1,7 +1,7 @@
 //! Pacemaker cells: what beats by itself.
 
 use super::SiteParams;
-use super::check::{conflict, span_within, within};
+use super::check::{conflict, span_within};
 use crate::base::{Interval, ParamError, Problem, SiteId, Span, wide, word};
 
 /// A pacemaker at a site.
@@ -41,10 +41,6 @@ impl CellParams {
 
 /// Refuses a site that its table does not have.
 pub(super) const fn known(parameter: &'static str, site: SiteId, rows: usize) -> Result<(), ParamError> {
-    let value = wide(word(site.row()));
-    let rows = super::anatomy::count(rows);
-    match within(parameter, value, 0, rows.wrapping_sub(1)) {
-        Ok(()) if rows > 0 => Ok(()),
-        _ => Err(ParamError::new(parameter, Problem::NoSuchRow { value, rows })),
-    }
+    let (value, rows) = (wide(word(site.row())), super::anatomy::count(rows));
+    if value < rows { Ok(()) } else { Err(ParamError::new(parameter, Problem::NoSuchRow { value, rows })) }
 }
