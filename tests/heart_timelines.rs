@@ -271,6 +271,19 @@ fn arresting_the_cell_stops_the_series_in_its_place() {
 }
 
 #[test]
+fn releasing_what_runs_changes_nothing() {
+    let series = [span(900), span(700), span(800)];
+    let foci = [FocusParams::replay(SINUS, &series, false, SINUS_CELL)];
+    let mut heart = Heart::new(&plain::ANATOMY, &foci, Instant::ZERO).unwrap();
+    run(&mut heart, ms(2_000));
+    let before = heart.clone();
+    for cell in [SINUS_CELL, JUNCTION_CELL, VENTRICLE_CELL] {
+        heart.release(cell, ms(2_000)).unwrap();
+    }
+    assert_eq!(heart, before);
+}
+
+#[test]
 fn quiet_leaves_only_pulses_and_the_script() {
     let foci = [FocusParams::premature(APEX, span(400))];
     let mut heart = Heart::new(&plain::ANATOMY, &foci, Instant::ZERO).unwrap();

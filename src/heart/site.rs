@@ -117,7 +117,8 @@ fn divide_up(number: u64, by: u64) -> u32 {
             quotient |= 1_u32.wrapping_shl(bit);
         }
     }
-    if by == 0 || rest >= by { u32::MAX } else { quotient.saturating_add(u32::from(rest != 0)) }
+    // Still too large: the answer is beyond 32 bits, or there is none.
+    if rest >= by { u32::MAX } else { quotient.saturating_add(u32::from(rest != 0)) }
 }
 
 #[cfg(test)]
@@ -134,6 +135,14 @@ mod tests {
             }
         }
         assert_eq!(divide_up(1, 0), u32::MAX);
+    }
+
+    #[test]
+    fn a_sites_own_curve_and_latency_hold() {
+        let steep = SiteParams::new(Span::from_millis(250)).with_threshold(MilliVolts(1_000), Span::from_micros(600));
+        let pulse = Pulse { channel: Channel::Ventricular, amplitude: MilliVolts(2_499), width: Span::from_micros(400) };
+        assert_eq!(steep.resists(&pulse, Span::from_secs(1)), Some((NoCapture::TooWeak, 1))); // 1 V · (1 + 0.6/0.4)
+        assert_eq!(steep.with_latency(Span::from_millis(7)).latency, Span::from_millis(7));
     }
 
     #[test]
