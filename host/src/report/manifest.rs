@@ -3,7 +3,8 @@
 use super::facts::Facts;
 use super::number::{THIN, count, length, ms, peak, rate};
 use super::page::Section;
-use super::text::short;
+use super::text::{self, short};
+use crate::run_data::Canary;
 use maud::{Markup, html};
 use phase4::audit::{AuditSettings, Decision, Tolerance};
 use phase4::base::{Edge, Program, Straddle, Tie};
@@ -27,17 +28,11 @@ pub(super) fn section(facts: &Facts<'_>) -> Section {
                 (row("Decision", &decision(audit)))
             }
             @if let Some(canary) = &run.canary {
-                (row("Planted check fault", &format!(
-                    "no. {}, {}; {}{}",
-                    canary.fault,
-                    short(&canary.line, 200).trim_end_matches('.'),
-                    if canary.caught { "caught in its own short run" } else { "missed" },
-                    canary.rules.iter().map(|rule| rule.code()).fold(String::new(), |out, code| if out.is_empty() { format!(", {code}") } else { format!("{out} {code}") })
-                )))
+                (row("Planted check fault", &check_fault(canary)))
             }
             (row("Wall clock", "not recorded, so that the same run gives the same page"))
             dt { "Run again" }
-            dd { code.cmd { (super::text::clean(&run.command)) } }
+            dd { code.cmd { (text::clean(&run.command)) } }
         }
     };
     Section { id: "manifest", name: "Manifest", title: "Manifest".to_owned(), side, body, full: false }
@@ -45,6 +40,16 @@ pub(super) fn section(facts: &Facts<'_>) -> Section {
 
 fn row(name: &str, words: &str) -> Markup {
     html! { dt { (name) } dd { (words) } }
+}
+
+fn check_fault(canary: &Canary) -> String {
+    let rules = canary.rules.iter().map(|rule| rule.code()).collect::<Vec<_>>().join(" ");
+    let fate = match (canary.caught, rules.is_empty()) {
+        (true, false) => format!("caught in its own short run by {rules}"),
+        (true, true) => "caught in its own short run".to_owned(),
+        (false, _) => "missed".to_owned(),
+    };
+    format!("no. {}, {}; {fate}", canary.fault, text::fault(&canary.line))
 }
 
 const fn end_reason(reason: u32) -> &'static str {

@@ -3,7 +3,7 @@
 use super::facts::Facts;
 use super::number::{count, rate};
 use super::sign::{SYMBOLS, State, sign};
-use super::text::short;
+use super::text::{self, short};
 use super::wording::{Headline, headline};
 use super::{applies, cautions, coverage, findings, ladder, lens, manifest, overview, plots, rules, scenario, style, undecided};
 use crate::run_data::{RunData, Verdict};
@@ -148,13 +148,11 @@ fn proofs(facts: &Facts<'_>) -> Vec<String> {
         proofs.push(short(note, 400));
     }
     if let Some(fault) = &run.fault {
-        proofs.push(format!("A fault was planted in the device on purpose: {}.", short(fault, 200).trim_end_matches('.')));
+        proofs.push(format!("A fault was planted in the device on purpose: {}.", text::fault(fault)));
     }
     if let Some(canary) = run.canary.as_ref().filter(|canary| canary.caught) {
-        let line = short(&canary.line, 160);
-        let all = run.decided + run.undecided;
-        let cases = super::number::counted(all, "case", "cases");
-        let line = line.trim_end_matches('.');
+        let line = text::fault(&canary.line);
+        let cases = super::number::counted(run.decided + run.undecided, "case", "cases");
         proofs.push(format!(
             "The judge was checked in this run: a fault planted beside it, {line}, was caught. It decided {} of {cases}.",
             count(run.decided)

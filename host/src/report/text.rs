@@ -15,7 +15,16 @@ pub(super) fn short(text: &str, most: usize) -> String {
     line.chars().take(most.saturating_sub(1)).chain(['…']).collect()
 }
 
-/// The same with a capital first letter.
+/// A fault in words, as part of a sentence: without its number in front and the full stop behind.
+pub(super) fn fault(line: &str) -> String {
+    let line = short(line, 200);
+    let numbered = line.strip_prefix("fault ").and_then(|rest| rest.split_once(": "));
+    let words =
+        numbered.filter(|(number, _)| number.chars().all(|c| c.is_ascii_digit())).map_or(line.as_str(), |(_, words)| words);
+    words.trim_end_matches('.').to_owned()
+}
+
+/// The text with a capital first letter.
 pub(super) fn capital(text: &str) -> String {
     let mut chars = text.chars();
     chars.next().map_or_else(String::new, |first| first.to_uppercase().chain(chars).collect())
@@ -41,5 +50,7 @@ mod tests {
         assert_eq!(short(" a \n b ", 10), "a b");
         assert_eq!(short("abcdefgh", 5), "abcd…");
         assert_eq!(capital("held"), "Held");
+        assert_eq!(fault("fault 5: the rate timer runs too long, by 8 ms."), "the rate timer runs too long, by 8 ms");
+        assert_eq!(fault("fault of the day: none"), "fault of the day: none");
     }
 }

@@ -56,7 +56,7 @@ fn row(facts: &Facts<'_>, group: &Group<'_>) -> Markup {
     html! {
         tr role="row" {
             th.rid.when role="rowheader" scope="row" { (super::number::listed(&when)) }
-            td role="cell" { (group.rule.code()) }
+            td role="cell" data-l="rule" { (group.rule.code()) }
             td.line.why role="cell" { (group.hint.map_or_else(|| "The evidence did not reach.".to_owned(), |hint| why(facts, hint))) }
             td.line.why role="cell" { (group.hint.map_or("", way_out)) }
         }

@@ -95,7 +95,7 @@ pub(super) fn void(facts: &Facts<'_>) -> Words {
     match &facts.run.canary {
         Some(canary) => (
             format!("The judge missed its own planted fault (no. {}), so nothing here counts.", canary.fault),
-            Some(format!("The fault was: {}.", crate::report::text::short(&canary.line, 200).trim_end_matches('.'))),
+            Some(format!("The fault was: {}.", crate::report::text::fault(&canary.line))),
         ),
         None => ("The judge could not be checked, so nothing here counts.".to_owned(), None),
     }
