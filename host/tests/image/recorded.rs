@@ -446,6 +446,6 @@ pub static SETUP: bench::Setup<'static, SITES, TRACTS, CELLS, FOCI> = bench::Set
     judged: Some((PROGRAM, AUDIT)),
     steps: &SCRIPT,
     start: START,
-    length: base::Span::from_micros(300000000),
+    length: base::Span::from_micros(301000000),
     seed: 1,
 };
