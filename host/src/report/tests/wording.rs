@@ -17,7 +17,10 @@ const QUIET: &str = "[[step]]\nwhen = \"at 2 s\"\nact = \"quiet\"\n";
 #[test]
 fn a_run_that_holds_says_what_was_not_tried() {
     let (first, second) = said(&shipped("recorded.toml"));
-    assert!(first.starts_with("Holds. In 5 min 1 s every rule that was tried held; ") && first.ends_with(" not tried."), "{first}");
+    assert!(
+        first.starts_with("Holds. In 5 min 1 s every rule that was tried held; ") && first.ends_with(" not tried."),
+        "{first}"
+    );
     assert!(
         second.starts_with("All ")
             && second.ends_with(" pulses that were judged came at their nominal instants, to the microsecond.")
