@@ -2,7 +2,7 @@
 
 use super::{Act, Cued, Log, Script, Sink, Step};
 use crate::audit::{AuditSettings, Auditor, Judgement, RuleSet};
-use crate::base::{Cause, CauseKind, Channel, Instant, Kind, NotYet, ParamError, Program, Pulse, Record, Span};
+use crate::base::{Cause, CauseKind, Instant, Kind, NotYet, ParamError, Program, Pulse, Record, Span};
 use crate::device::Device;
 use crate::heart::{Anatomy, FocusParams, Heart, PulseAnswer};
 use crate::lead::{Lead, LeadParams};
@@ -213,7 +213,7 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
     }
 
     /// Ends the run at the latest instant it has reached; the entries that this causes are still to be polled.
-    pub fn interrupt(&mut self) {
+    pub const fn interrupt(&mut self) {
         if self.ended.is_none() {
             self.stop(EndReason::Interrupted);
         }
@@ -401,34 +401,17 @@ impl<'a, D: Device, const S: usize, const T: usize, const C: usize, const F: usi
         true
     }
 
-    fn stop(&mut self, reason: EndReason) {
+    const fn stop(&mut self, reason: EndReason) {
         self.ended = Some(reason);
         self.end_at = self.now;
         self.pulse = None;
-        if reason == EndReason::Spinning
-            && let Some(auditor) = &mut self.auditor
-        {
-            auditor.spinning(self.now);
-        }
         self.phase = Phase::End;
     }
 
     fn end(&mut self) -> Record {
         self.phase = Phase::Settle;
         let reason = *self.ended.get_or_insert(EndReason::Length);
-        if let Some(auditor) = &mut self.auditor {
-            auditor.finish(self.now);
-        }
+        // The auditor learns from this record, as from one in a log, that the run is over, and whether the device spun.
         self.entered(Record::new(self.now, Kind::End, 0, Cause::NONE).with_details(reason.number(), 0))
-    }
-}
-
-/// The name of a channel's paced site is needed by whoever draws: the lead knows it.
-impl<D, const S: usize, const T: usize, const C: usize, const F: usize, const N: usize, const H: usize>
-    Bench<'_, D, S, T, C, F, N, H>
-{
-    /// The site that a channel's pulses reach, where the lead has that channel.
-    pub const fn pace_site(&self, channel: Channel) -> Option<crate::base::SiteId> {
-        self.lead.pace_site(channel)
     }
 }

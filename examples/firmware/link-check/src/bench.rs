@@ -28,7 +28,6 @@ crate::entries! { BENCH:
     Bench::log as fn(_);
     Bench::auditor as fn(_);
     Bench::blind as fn(_, _);
-    Bench::pace_site as fn(_, _);
     run as fn(_, _, _);
     Foreign::new as fn(_, _);
     Foreign::poll as fn(_, _);
